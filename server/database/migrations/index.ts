@@ -1,0 +1,4 @@
+import { Foundation1764547200000 } from './1764547200000-foundation.ts';
+
+/** Listed by hand: what runs, and in which order, is code, not a file pattern. */
+export const migrations = [Foundation1764547200000];
