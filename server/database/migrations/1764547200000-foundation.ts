@@ -47,7 +47,7 @@ CREATE TABLE session (
   revoked_at timestamptz,
   revoked_reason text
 );
-CREATE INDEX session_user ON session (user_id);
+CREATE INDEX session_by_user ON session (user_id);
 
 -- Only the SHA-256 of a token is kept. A used token that comes back revokes its whole session.
 CREATE TABLE refresh_token (
