@@ -7,13 +7,13 @@ import tseslint from 'typescript-eslint';
  * direction is an error here, not advice.
  */
 const forbid = (...patterns) => ({
-  'no-restricted-imports': [
-    'error',
-    { patterns: patterns.map(([group, message]) => ({ group, message })) },
-  ],
+  'no-restricted-imports': ['error', { patterns: patterns.map(([group, message]) => ({ group, message })) }],
 });
 const fromOutsideShared = [['**/src/**', '**/server/**', '**/worker/**'], 'shared imports none of its users'];
-const fromNode = [['node:*', 'fs', 'path', 'pg', 'typeorm', 'express', 'vue'], 'shared/stats and shared/radio are pure'];
+const fromNode = [
+  ['node:*', 'fs', 'path', 'pg', 'typeorm', 'express', 'vue'],
+  'shared/stats and shared/radio are pure',
+];
 
 export default tseslint.config(
   { ignores: ['dist/**', 'node_modules/**', '.data/**', 'coverage/**', 'public/**'] },
@@ -52,7 +52,14 @@ export default tseslint.config(
   {
     files: ['**/*.mjs', '**/*.js'],
     languageOptions: {
-      globals: { process: 'readonly', console: 'readonly', URL: 'readonly', setTimeout: 'readonly', clearTimeout: 'readonly', Buffer: 'readonly' },
+      globals: {
+        process: 'readonly',
+        console: 'readonly',
+        URL: 'readonly',
+        setTimeout: 'readonly',
+        clearTimeout: 'readonly',
+        Buffer: 'readonly',
+      },
     },
   },
   { files: ['shared/**/*.ts'], rules: forbid(fromOutsideShared) },
@@ -72,14 +79,20 @@ export default tseslint.config(
   {
     files: ['src/**/*.{ts,vue}'],
     ignores: ['**/*.test.ts'],
-    rules: forbid([['**/server/**', '**/worker/**', 'node:*'], 'the client talks to the server over HTTP only']),
+    rules: forbid([
+      ['**/server/**', '**/worker/**', 'node:*'],
+      'the client talks to the server over HTTP only',
+    ]),
   },
   {
     files: ['src/components/**/*.{ts,vue}'],
     ignores: ['**/*.test.ts'],
     rules: forbid(
       [['**/server/**', '**/worker/**', 'node:*'], 'the client talks to the server over HTTP only'],
-      [['**/src/api/**', '@/api/**', '../../api/**', '../api/**', '**/stores/**'], 'components get props and emit events; views and stores talk to the API'],
+      [
+        ['**/src/api/**', '@/api/**', '../../api/**', '../api/**', '**/stores/**'],
+        'components get props and emit events; views and stores talk to the API',
+      ],
     ),
   },
   {
@@ -92,7 +105,10 @@ export default tseslint.config(
     ignores: ['**/*.test.ts'],
     rules: forbid(
       [['**/src/**', '**/worker/**'], 'server and worker meet only in PostgreSQL'],
-      [['../*/*.repository.ts', '../*/*.service.ts'], "a feature may import another feature's read model only"],
+      [
+        ['../*/*.repository.ts', '../*/*.service.ts'],
+        "a feature may import another feature's read model only",
+      ],
     ),
   },
   {
