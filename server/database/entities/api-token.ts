@@ -1,4 +1,5 @@
 import { Column, Entity, ForeignKey, Index, PrimaryColumn, PrimaryGeneratedColumn } from 'typeorm';
+import type { TokenScope } from '../../../shared/contracts/permission.ts';
 import { Station } from './station.ts';
 import { User } from './user.ts';
 
@@ -21,7 +22,7 @@ export class ApiToken {
   tokenHash!: Buffer;
 
   @Column({ type: 'text', array: true })
-  scopes!: string[];
+  scopes!: TokenScope[];
 
   @Column({ name: 'created_by', type: 'uuid', nullable: true })
   @ForeignKey(() => User, { name: 'api_token_created_by_fkey', onDelete: 'SET NULL' })

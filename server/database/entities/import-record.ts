@@ -1,8 +1,8 @@
 import { Check, Column, Entity, ForeignKey, PrimaryColumn, PrimaryGeneratedColumn } from 'typeorm';
+import type { ImportKind } from '../../../shared/contracts/import.ts';
 import { Station } from './station.ts';
 import { User } from './user.ts';
 
-export type ImportKind = 'spots' | 'dwells';
 export type ImportState =
   'uploading' | 'uploaded' | 'queued' | 'running' | 'done' | 'failed' | 'cancelled' | 'undone';
 
@@ -37,6 +37,7 @@ export class ImportRecord {
   @Column({ type: 'text' })
   state!: ImportState;
 
+  /** Parsed with its contract when read: it may have been written by an earlier release. */
   @Column({ type: 'jsonb', nullable: true })
   mapping!: Record<string, unknown> | null;
 

@@ -1,5 +1,5 @@
 import { Check, Column, Entity, ForeignKey, Index, PrimaryColumn, PrimaryGeneratedColumn } from 'typeorm';
-import type { StationRole } from './membership.ts';
+import type { Role } from '../../../shared/contracts/permission.ts';
 import { Station } from './station.ts';
 import { User } from './user.ts';
 
@@ -20,7 +20,7 @@ export class Invitation {
   email!: string;
 
   @Column({ type: 'text' })
-  role!: StationRole;
+  role!: Role;
 
   /** SHA-256 of the token in the letter. */
   @Column({ name: 'token_hash', type: 'bytea' })

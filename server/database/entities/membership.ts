@@ -1,8 +1,7 @@
 import { Check, Column, Entity, Index, JoinColumn, ManyToOne, PrimaryColumn, type Relation } from 'typeorm';
+import type { Role } from '../../../shared/contracts/permission.ts';
 import { Station } from './station.ts';
 import { User } from './user.ts';
-
-export type StationRole = 'manager' | 'operator' | 'analyst' | 'contester';
 
 /** What a person may do at a station. No row, no access. */
 @Entity('membership')
@@ -24,7 +23,7 @@ export class Membership {
   user!: Relation<User>;
 
   @Column({ type: 'text' })
-  role!: StationRole;
+  role!: Role;
 
   @Column({ name: 'created_at', type: 'timestamptz', default: () => 'now()' })
   createdAt!: Date;

@@ -1,5 +1,5 @@
 import { Check, Column, Entity, ForeignKey, Index, PrimaryColumn, PrimaryGeneratedColumn } from 'typeorm';
-import type { ImportKind } from './import-record.ts';
+import type { ImportKind } from '../../../shared/contracts/import.ts';
 import { Station } from './station.ts';
 import { User } from './user.ts';
 
@@ -21,6 +21,7 @@ export class SavedMapping {
   @Column({ type: 'text' })
   name!: string;
 
+  /** Parsed with its contract when read: it may have been written by an earlier release. */
   @Column({ type: 'jsonb' })
   mapping!: Record<string, unknown>;
 

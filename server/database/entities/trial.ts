@@ -16,6 +16,7 @@ export class Trial {
   @Column({ type: 'text' })
   name!: string;
 
+  /** Parsed with its contract when read: it may have been written by an earlier release. */
   @Column({ type: 'jsonb' })
   question!: Record<string, unknown>;
 
