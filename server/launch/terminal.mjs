@@ -1,0 +1,68 @@
+/**
+ * What the person at the terminal sees: one line a step, with the time it took.
+ *
+ * Steps that take longer than a second announce themselves first, so that nobody watches a silent
+ * screen while packages are downloaded; quick ones print their result only.
+ */
+
+/** A failure that has a cure the person can read; it is printed without a stack trace. */
+export class LaunchError extends Error {
+  /** @param {string} message a whole sentence or more, ending in what to do about it */
+  constructor(message) {
+    super(message);
+    this.name = 'LaunchError';
+  }
+}
+
+/** @typedef {{ line(text?: string): void, step<T>(label: string, work: () => Promise<T>): Promise<T> }} Terminal */
+
+const announceAfterMs = 1_000;
+
+/** @param {number} milliseconds */
+export function formatElapsed(milliseconds) {
+  const seconds = milliseconds / 1_000;
+  if (seconds < 60) return `${seconds.toFixed(1)} s`;
+  return `${Math.floor(seconds / 60)} min ${String(Math.round(seconds % 60)).padStart(2, '0')} s`;
+}
+
+/**
+ * @param {(text: string) => void} [write] where finished lines go; without their line end
+ * @returns {Terminal}
+ */
+export function createTerminal(write = (text) => process.stdout.write(`${text}\n`)) {
+  return {
+    line: (text = '') => write(text),
+    async step(label, work) {
+      const startedAt = performance.now();
+      const announcement = setTimeout(() => write(`  ... ${label}`), announceAfterMs);
+      try {
+        const result = await work();
+        clearTimeout(announcement);
+        write(`  ok  ${label} (${formatElapsed(performance.now() - startedAt)})`);
+        return result;
+      } catch (error) {
+        clearTimeout(announcement);
+        write(`  !!  ${label}: failed after ${formatElapsed(performance.now() - startedAt)}`);
+        throw error;
+      }
+    },
+  };
+}
+
+/**
+ * Prints a failure the way its kind deserves: a sentence for what the person can cure, the stack
+ * for what only a programmer can.
+ *
+ * @param {unknown} error
+ */
+export function printFailure(error) {
+  const { code, path } = /** @type {NodeJS.ErrnoException} */ (error ?? {});
+  if (error instanceof LaunchError) process.stderr.write(`\n${error.message}\n`);
+  else if (code === 'EACCES' || code === 'EPERM') {
+    process.stderr.write(
+      `\nThis user may not use ${path}. Run it as the owner of that file, or give it to this user.\n`,
+    );
+  } else if (code === 'ENOSPC')
+    process.stderr.write('\nThe disk is full. Make room, then try again; nothing half-made is kept.\n');
+  else process.stderr.write(`\n${error instanceof Error ? error.stack : String(error)}\n`);
+}
