@@ -15,6 +15,11 @@ const fromNode = [
   'shared/stats and shared/radio are pure',
 ];
 
+const fromOutsideWorker = [
+  ['**/src/**', '**/server/features/**', '**/server/middleware/**', '**/server/app.ts'],
+  'the worker shares only database and platform with the server',
+];
+
 export default tseslint.config(
   { ignores: ['dist/**', 'node_modules/**', '.data/**', 'coverage/**', 'public/**'] },
   ...tseslint.configs.strict,
@@ -114,9 +119,14 @@ export default tseslint.config(
   {
     files: ['worker/**/*.ts'],
     ignores: ['**/*.test.ts'],
-    rules: forbid([
-      ['**/src/**', '**/server/features/**', '**/server/middleware/**', '**/server/app.ts'],
-      'the worker shares only database and platform with the server',
+    rules: forbid(fromOutsideWorker, [
+      ['**/truth.ts', '**/hidden-values.ts'],
+      'what the simulator knows of its antennas and receivers is for tests only',
     ]),
+  },
+  {
+    // The simulator itself and the tests' window on it hold the values that all others must not see.
+    files: ['worker/fake-feed/simulator.ts', 'worker/fake-feed/truth.ts'],
+    rules: forbid(fromOutsideWorker),
   },
 );
