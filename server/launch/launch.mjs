@@ -6,7 +6,7 @@ import { chooseHome, openStationCluster } from './cluster.mjs';
 import { databaseAccount } from './debian.mjs';
 import { firstFreePort, freePort } from './ports.mjs';
 import { keepSecrets } from './secrets.mjs';
-import { createSupervisor, readAnnouncement } from './supervisor.mjs';
+import { createSupervisor } from './supervisor.mjs';
 import { LaunchError } from './terminal.mjs';
 
 /**
@@ -32,7 +32,7 @@ import { LaunchError } from './terminal.mjs';
 /**
  * @typedef {object} Running
  * @property {string} url
- * @property {string[]} announcements what scripts and processes had to say to the person, in order
+ * @property {string | undefined} setUpToken lets its holder make the first account of a station without any
  * @property {import('./cluster.mjs').Cluster} cluster
  * @property {() => Record<string, number | undefined>} pids of the processes, by name
  * @property {() => void} kill ends the processes at once; `stop` must still be awaited
@@ -51,21 +51,12 @@ export async function launch(plan, { terminal, signal }) {
   // The database's user must be able to pass through; what is secret in here is closed by itself.
   mkdirSync(dataFolder, { recursive: true, mode: 0o755 });
   mkdirSync(logFolder, { recursive: true, mode: 0o700 });
-  const secrets = keepSecrets(join(dataFolder, 'secrets.json'), ['jwt']);
+  const secrets = keepSecrets(join(dataFolder, 'secrets.json'), ['jwt', 'setUp']);
   /** @param {string} text */
   const say = (text) => terminal.line(text);
-  /** @type {string[]} */
-  const announcements = [];
-  let ready = false;
-  /** @param {string} text */
-  const onAnnouncement = (text) => {
-    if (ready) terminal.line(text);
-    else announcements.push(text);
-  };
-
   /** @type {import('./cluster.mjs').Cluster | null} */
   let cluster = null;
-  const supervisor = createSupervisor({ root, logFolder, say, onAnnouncement });
+  const supervisor = createSupervisor({ root, logFolder, say });
   const stop = async () => {
     await supervisor.stop();
     await cluster?.stop();
@@ -98,9 +89,7 @@ export async function launch(plan, { terminal, signal }) {
         JWT_SECRET: secrets.jwt,
       };
       for (const script of plan.scripts) {
-        await terminal.step(script.label, () =>
-          runScript(script, { root, env: scriptEnv, say, onAnnouncement, signal }),
-        );
+        await terminal.step(script.label, () => runScript(script, { root, env: scriptEnv, say, signal }));
       }
     } finally {
       // Neither half may be left working in the background, whatever became of the other.
@@ -117,6 +106,8 @@ export async function launch(plan, { terminal, signal }) {
     const env = {
       PUBLIC_URL: url,
       JWT_SECRET: secrets.jwt,
+      SETUP_TOKEN: secrets.setUp,
+      CLIENT_FOLDER: join(root, 'dist', 'client'),
       ...process.env,
       ...plan.env,
       // In the demo both are played on this machine, whatever a real station's settings say.
@@ -134,10 +125,9 @@ export async function launch(plan, { terminal, signal }) {
       if (readyUrl === undefined) await begin();
       else await terminal.step(`Starting the ${name}`, begin);
     }
-    ready = true;
     return {
       url,
-      announcements,
+      setUpToken: secrets.setUp,
       cluster,
       pids: () => supervisor.pids(),
       kill: () => supervisor.kill(),
@@ -166,20 +156,14 @@ function settle(works) {
 
 /**
  * @param {{ label: string, args: string[] }} script
- * @param {{
- *   root: string, env: Environment, say: (text: string) => void, onAnnouncement: (text: string) => void, signal?: AbortSignal,
- * }} options
+ * @param {{ root: string, env: Environment, say: (text: string) => void, signal?: AbortSignal }} options
  */
-async function runScript({ label, args }, { root, env, say, onAnnouncement, signal }) {
+async function runScript({ label, args }, { root, env, say, signal }) {
   const { code, output } = await run(process.execPath, args, {
     cwd: root,
     env: { ...env, NODE_ENV: 'production' },
     signal,
-    onLine: (line) => {
-      const announcement = readAnnouncement(line);
-      if (announcement === null) say(`      ${line}`);
-      else onAnnouncement(announcement);
-    },
+    onLine: (line) => say(`      ${line}`),
   });
   if (code !== 0) throw new LaunchError(`${label}: ended with code ${code}.\n${lastLines(output, 20)}`);
 }

@@ -21,6 +21,8 @@ import { LaunchError, createTerminal, formatElapsed, printFailure } from './term
 
 const root = fileURLToPath(new URL('../..', import.meta.url));
 
+const stationDatabase = 'whichwire';
+
 /**
  * @param {{ demo: boolean, env: Record<string, string | undefined> }} options `env`: what the person has set
  * @param {(() => Promise<void>)[]} besides
@@ -35,7 +37,7 @@ function makePlan({ demo, env }, besides) {
   return {
     root,
     demo,
-    database: demo ? 'whichwire_demo' : 'whichwire',
+    database: demo ? 'whichwire_demo' : stationDatabase,
     host: env.HOST ?? '127.0.0.1',
     wantedPort,
     env: { ...env, DEMO: demo ? '1' : '0' },
@@ -69,6 +71,38 @@ function readSettings() {
     );
   }
   return settings;
+}
+
+/**
+ * The demo's people, as the server itself names them: the sign-in page offers the same ones.
+ *
+ * @param {import('./launch.mjs').Running} running
+ */
+async function describeDemoAccounts({ url }) {
+  const response = await fetch(`${url}/api/auth/demo-accounts`);
+  /** @type {{ accounts: { email: string, password: string, does: string }[] }} */
+  const { accounts } = await response.json();
+  const width = Math.max(...accounts.map(({ email }) => email.length));
+  return [
+    'Demo accounts:',
+    ...accounts.map(({ email, password, does }) => `  ${email.padEnd(width)}  ${password.padEnd(24)}${does}`),
+  ];
+}
+
+/**
+ * The link by which the first manager of a real station makes their account; nothing once there is one.
+ *
+ * @param {import('./launch.mjs').Running} running
+ * @param {Record<string, string | undefined>} settings
+ */
+async function describeSetUp({ url, cluster, setUpToken }, settings) {
+  const found = await cluster.query('SELECT count(*) FROM app_user', stationDatabase);
+  if (Number(found) > 0) return [];
+  const link = `${settings.PUBLIC_URL ?? url}/set-up#${settings.SETUP_TOKEN ?? setUpToken}`;
+  return [
+    'Nobody has an account yet. Make the station and its first manager with this link, which works once:',
+    `  ${link}`,
+  ];
 }
 
 /** @param {AbortController} stopping */
@@ -130,7 +164,8 @@ async function main() {
     attempt.claim.describe(`${running.url}, process ${process.pid}`);
     ctrlC.onSecond(() => running.kill());
     terminal.line(`\nReady after ${formatElapsed(performance.now() - startedAt)}:  ${running.url}`);
-    for (const text of running.announcements) terminal.line(text);
+    for (const text of demo ? await describeDemoAccounts(running) : await describeSetUp(running, settings))
+      terminal.line(text);
     terminal.line(`Logs are in ${join(root, '.data', 'logs')}. Stop with Ctrl-C.`);
 
     if (!signal.aborted) await once(signal, 'abort');

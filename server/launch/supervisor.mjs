@@ -59,8 +59,6 @@ export function createSupervisor({ root, logFolder, say, onAnnouncement = () => 
       running.set(plan.name, child);
       for (const stream of [child.stdout, child.stderr]) {
         createInterface({ input: /** @type {NodeJS.ReadableStream} */ (stream) }).on('line', (line) => {
-          const announcement = readAnnouncement(line);
-          if (announcement !== null) return onAnnouncement(announcement);
           record.tail = [...record.tail.slice(1 - tailLines), line];
           log.write(line);
         });
@@ -140,19 +138,5 @@ async function answers(url) {
     return response.status === 200;
   } catch {
     return false;
-  }
-}
-
-/**
- * @param {string} line
- * @returns {string | null}
- */
-export function readAnnouncement(line) {
-  if (!line.startsWith('{') || !line.includes('"announce"')) return null;
-  try {
-    const { announce } = JSON.parse(line);
-    return typeof announce === 'string' ? announce : null;
-  } catch {
-    return null;
   }
 }
