@@ -318,7 +318,9 @@ BEGIN
   WHILE month_start <= (to_time AT TIME ZONE 'UTC') LOOP
     partition_name := 'spot_' || to_char(month_start, 'YYYY_MM');
     IF to_regclass(partition_name) IS NULL THEN
-      PERFORM pg_advisory_xact_lock(hashtext('spot partitions'));
+      -- The lock that ATTACH takes anyhow. Not an advisory lock: taking a table's lock also makes this
+      -- session hear of tables others made meanwhile, else the second look below would miss them.
+      LOCK TABLE spot IN SHARE UPDATE EXCLUSIVE MODE;
       IF to_regclass(partition_name) IS NULL THEN
         EXECUTE format('CREATE TABLE %I (LIKE spot INCLUDING ALL)', partition_name);
         EXECUTE format('ALTER TABLE spot ATTACH PARTITION %I FOR VALUES FROM (%L) TO (%L)', partition_name,
