@@ -1,0 +1,170 @@
+import type { CheckedClusters } from './cluster-ids.ts';
+import type { CheckedDesign } from './design.ts';
+import type { LeastSquares } from './least-squares.ts';
+
+/** Rows in the order of their clusters, and where each cluster starts (counting sort, O(n)). */
+function byCluster({ ids, size }: CheckedClusters): { order: Int32Array; starts: Int32Array } {
+  const starts = new Int32Array(size + 1);
+  for (let i = 0; i < ids.length; i++) starts[ids[i]! + 1]! += 1;
+  for (let g = 0; g < size; g++) starts[g + 1]! += starts[g]!;
+  const next = starts.slice(0, size);
+  const order = new Int32Array(ids.length);
+  for (let i = 0; i < ids.length; i++) {
+    const id = ids[i]!;
+    order[next[id]!] = i;
+    next[id]! += 1;
+  }
+  return { order, starts };
+}
+
+/**
+ * Sum over clusters of the squared influence of the cluster on the coefficients, without any factor:
+ * bread * meat * bread of the sandwich.
+ *
+ * Cluster g moves the dense slopes by phi_g = (Z'WZ)^-1 sum of w r z over its rows (z centred in its
+ * cell), and cell c by a_gc - mean_c' phi_g with a_gc = (sum of w r over its rows in c) / W_c. A cluster
+ * touches few cells, so the products of a_gc are few. Time O(n m + clusters (m^2 + t^2 + t m)), t the cells a cluster
+ * touches, m the dense columns; memory O(k^2 + clusters m).
+ *
+ * @returns row-major k by k, rows and columns of dependent coefficients zero
+ */
+export function clusterSandwich(
+  design: CheckedDesign,
+  fit: LeastSquares,
+  weights: Float64Array | null,
+  clusters: CheckedClusters,
+): Float64Array {
+  const { n, cells, cellCount } = design;
+  const { residuals, basis, inverse, centred, cellMeans, cellWeights } = fit;
+  const k = fit.solution.length;
+  const m = basis.length;
+  const { ids, size } = clusters;
+  const scores = weights ? residuals.map((value, i) => value * weights[i]!) : residuals;
+
+  const sums = new Float64Array(size * m);
+  basis.forEach((j, position) => {
+    const column = centred[j]!;
+    for (let i = 0; i < n; i++) sums[ids[i]! * m + position]! += scores[i]! * column[i]!;
+  });
+  const influence = new Float64Array(size * m);
+  const slopes = new Float64Array(m * m);
+  for (let g = 0; g < size; g++) {
+    for (let a = 0; a < m; a++) {
+      let value = 0;
+      for (let b = 0; b < m; b++) value += inverse[a * m + b]! * sums[g * m + b]!;
+      influence[g * m + a] = value;
+    }
+    for (let a = 0; a < m; a++) {
+      for (let b = 0; b < m; b++) slopes[a * m + b]! += influence[g * m + a]! * influence[g * m + b]!;
+    }
+  }
+
+  const covariance = new Float64Array(k * k);
+  for (let a = 0; a < m; a++) {
+    for (let b = 0; b < m; b++) {
+      covariance[(cellCount + basis[a]!) * k + cellCount + basis[b]!] = slopes[a * m + b]!;
+    }
+  }
+  if (!cells) return covariance;
+
+  // Products of the cells' own parts, and of those with the slopes' part.
+  const mixed = new Float64Array(cellCount * m);
+  const own = new Float64Array(cellCount);
+  const touched = new Int32Array(cellCount);
+  const isTouched = new Uint8Array(cellCount);
+  const { order, starts } = byCluster(clusters);
+  for (let g = 0; g < size; g++) {
+    let count = 0;
+    for (let at = starts[g]!; at < starts[g + 1]!; at++) {
+      const i = order[at]!;
+      const c = cells[i]!;
+      if (isTouched[c] === 0) {
+        isTouched[c] = 1;
+        touched[count++] = c;
+      }
+      own[c]! += scores[i]!;
+    }
+    for (let p = 0; p < count; p++) own[touched[p]!]! /= cellWeights[touched[p]!]!;
+    for (let p = 0; p < count; p++) {
+      const c = touched[p]!;
+      const amount = own[c]!;
+      for (let q = 0; q < count; q++) covariance[c * k + touched[q]!]! += amount * own[touched[q]!]!;
+      for (let a = 0; a < m; a++) mixed[c * m + a]! += amount * influence[g * m + a]!;
+    }
+    for (let p = 0; p < count; p++) own[touched[p]!] = isTouched[touched[p]!] = 0;
+  }
+  // Means of the independent columns per cell, and those times the slopes' covariance.
+  const means = new Float64Array(cellCount * m);
+  const carried = new Float64Array(cellCount * m);
+  for (let c = 0; c < cellCount; c++) {
+    for (let a = 0; a < m; a++) means[c * m + a] = cellMeans[basis[a]!]![c]!;
+    for (let a = 0; a < m; a++) {
+      let value = 0;
+      for (let b = 0; b < m; b++) value += slopes[a * m + b]! * means[c * m + b]!;
+      carried[c * m + a] = value;
+      const cross = mixed[c * m + a]! - value;
+      covariance[c * k + cellCount + basis[a]!] = cross;
+      covariance[(cellCount + basis[a]!) * k + c] = cross;
+    }
+  }
+  for (let c = 0; c < cellCount; c++) {
+    for (let d = 0; d < cellCount; d++) {
+      let value = 0;
+      for (let a = 0; a < m; a++) {
+        value +=
+          means[d * m + a]! * (carried[c * m + a]! - mixed[c * m + a]!) -
+          means[c * m + a]! * mixed[d * m + a]!;
+      }
+      covariance[c * k + d]! += value;
+    }
+  }
+  return covariance;
+}
+
+/** Diagonal of (X'WX)^-1, zero for dependent coefficients and empty cells. */
+export function inverseDiagonal(design: CheckedDesign, fit: LeastSquares): Float64Array {
+  const { basis, inverse, cellMeans, cellWeights } = fit;
+  const m = basis.length;
+  const diagonal = new Float64Array(fit.solution.length);
+  basis.forEach((j, a) => (diagonal[design.cellCount + j] = inverse[a * m + a]!));
+  for (let c = 0; c < design.cellCount; c++) {
+    if (cellWeights[c] === 0) continue;
+    let value = 1 / cellWeights[c]!;
+    for (let a = 0; a < m; a++) {
+      for (let b = 0; b < m; b++) {
+        value += cellMeans[basis[a]!]![c]! * inverse[a * m + b]! * cellMeans[basis[b]!]![c]!;
+      }
+    }
+    diagonal[c] = value;
+  }
+  return diagonal;
+}
+
+/** Per coefficient: rows with a value other than zero, and the clusters they belong to. O(n m). */
+export function support(design: CheckedDesign, { ids, size }: CheckedClusters) {
+  const { n, cells, cellCount, columns } = design;
+  const rows = new Int32Array(cellCount + columns.length);
+  const clusters = new Int32Array(cellCount + columns.length);
+  if (cells) {
+    const last = new Int32Array(cellCount).fill(-1);
+    const { order } = byCluster({ ids, size, count: size });
+    for (let at = 0; at < n; at++) {
+      const i = order[at]!;
+      const c = cells[i]!;
+      rows[c]! += 1;
+      if (last[c] !== ids[i]) clusters[c]! += 1;
+      last[c] = ids[i]!;
+    }
+  }
+  const seen = new Int32Array(size).fill(-1);
+  columns.forEach((column, j) => {
+    for (let i = 0; i < n; i++) {
+      if (column[i] === 0) continue;
+      rows[cellCount + j]! += 1;
+      const id = ids[i]!;
+      if (seen[id] !== j) clusters[cellCount + j]! += 1;
+      seen[id] = j;
+    }
+  });
+  return { rows, clusters };
+}

@@ -1,0 +1,15 @@
+export type { Numbers } from './arguments.ts';
+export * from './benjamini-hochberg.ts';
+export { clusterIds, pairClusters, type ClusterIds } from './cluster-ids.ts';
+export * from './cluster-mean.ts';
+export * from './cluster-regression.ts';
+export type { Design } from './design.ts';
+export * from './equivalence.ts';
+export * from './hodges-lehmann.ts';
+export * from './intervals.ts';
+export * from './mcnemar.ts';
+export * from './paired-t.ts';
+export * from './random.ts';
+export * from './sign-test.ts';
+export * from './signed-rank.ts';
+export * from './verdict.ts';
