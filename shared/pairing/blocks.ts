@@ -42,7 +42,7 @@ export function spotsNeeded(window: PairingWindow, rules: PairingRules): Pairing
 
 /** Who listened for how long in each block. */
 export interface Listening {
-  /** Seconds that a side (receiver and antenna) listened outside guards in a block since 1970. */
+  /** Milliseconds that a side (receiver and antenna) listened outside guards in a block. */
   ofSide(side: number, block: number): number;
   /**
    * Antenna pairs (dense antenna numbers, two by two, the lower first) whose heard-only stations count
@@ -52,8 +52,7 @@ export interface Listening {
   columns(): ListeningColumns;
 }
 
-const SHORTEST_LISTENING_SECONDS = 120;
-const LARGEST_LISTENING_DIFFERENCE = 0.2;
+const SHORTEST_LISTENING_MS = 120_000;
 
 /**
  * Adds up listening time per block. An antenna's time is the sum over its receivers, not their union:
@@ -77,7 +76,7 @@ export function listeningTimes(
     const to = Math.min(index.endMs[p]!, end * blockMs);
     for (let block = Math.floor(from / blockMs); block * blockMs < to; block++) {
       const heardMs = Math.min(to, (block + 1) * blockMs) - Math.max(from, block * blockMs);
-      if (heardMs > 0) bySide[(block - first) * sideCount + index.side[p]!]! += heardMs / 1000;
+      if (heardMs > 0) bySide[(block - first) * sideCount + index.side[p]!]! += heardMs;
     }
   }
 
@@ -96,16 +95,15 @@ export function listeningTimes(
   };
 }
 
-function comparableIn(seconds: Float64Array): number[] {
+function comparableIn(listenedMs: Float64Array): number[] {
   const pairs: number[] = [];
-  for (let a = 0; a < seconds.length; a++) {
-    if (seconds[a]! < SHORTEST_LISTENING_SECONDS) continue;
-    for (let b = a + 1; b < seconds.length; b++) {
-      const longer = Math.max(seconds[a]!, seconds[b]!);
-      const difference = Math.abs(seconds[a]! - seconds[b]!);
-      if (seconds[b]! >= SHORTEST_LISTENING_SECONDS && difference <= LARGEST_LISTENING_DIFFERENCE * longer) {
-        pairs.push(a, b);
-      }
+  for (let a = 0; a < listenedMs.length; a++) {
+    if (listenedMs[a]! < SHORTEST_LISTENING_MS) continue;
+    for (let b = a + 1; b < listenedMs.length; b++) {
+      if (listenedMs[b]! < SHORTEST_LISTENING_MS) continue;
+      const longer = Math.max(listenedMs[a]!, listenedMs[b]!);
+      // 20 % in whole milliseconds: 0.2 times a time is not exact.
+      if (5 * Math.abs(listenedMs[a]! - listenedMs[b]!) <= longer) pairs.push(a, b);
     }
   }
   return pairs;
@@ -117,7 +115,7 @@ function listeningColumns(
   range: BlockRange,
 ): ListeningColumns {
   const sideCount = sides.receiver.length;
-  const listened = bySide.reduce((count, seconds) => (seconds > 0 ? count + 1 : count), 0);
+  const listened = bySide.reduce((count, listenedMs) => (listenedMs > 0 ? count + 1 : count), 0);
   const columns: ListeningColumns = {
     receiver: new Int32Array(listened),
     antenna: new Int32Array(listened),
@@ -131,7 +129,7 @@ function listeningColumns(
     columns.receiver[row] = sides.receiver[side]!;
     columns.antenna[row] = sides.antenna[side]!;
     columns.blockMinute[row] = (range.first + Math.floor(i / sideCount)) * range.blockMinutes;
-    columns.seconds[row] = bySide[i]!;
+    columns.seconds[row] = bySide[i]! / 1000;
     row++;
   }
   return columns;

@@ -24,3 +24,13 @@ export {
   type PairingRules,
 } from './rules.ts';
 export { GUARDED, TAGGED, UNTAGGED, tagSpots, type TagColumns } from './tag.ts';
+export {
+  dwellColumns,
+  heardOnlyRowsOf,
+  spotColumns,
+  unitRowsOf,
+  type DwellRow,
+  type HeardOnlyRow,
+  type SpotRow,
+  type UnitRow,
+} from './from-rows.ts';

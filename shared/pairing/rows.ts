@@ -1,4 +1,5 @@
 import type { HeardOnlyColumns, UnitColumns } from './columns.ts';
+import type { HeardOnlyRow } from './from-rows.ts';
 import { differenceOfMeans } from './columns.ts';
 import { orderByKey } from './order.ts';
 
@@ -123,10 +124,8 @@ function emptySums(n: number) {
   };
 }
 
-/** One row of `HeardOnlyColumns`, with dense antenna numbers. */
-export type HeardOnlyRow = { [K in keyof HeardOnlyColumns]: number };
-
 export interface HeardOnlyRows {
+  /** Takes dense antenna numbers. */
   add(row: HeardOnlyRow): void;
   finish(antennas: Int32Array): HeardOnlyColumns;
 }
