@@ -83,7 +83,6 @@ export async function launch(plan, { terminal, signal }) {
         },
       );
       const scriptEnv = {
-        ...process.env,
         ...plan.env,
         DATABASE_URL: cluster.url(plan.database),
         JWT_SECRET: secrets.jwt,
@@ -108,7 +107,6 @@ export async function launch(plan, { terminal, signal }) {
       JWT_SECRET: secrets.jwt,
       SETUP_TOKEN: secrets.setUp,
       CLIENT_FOLDER: join(root, 'dist', 'client'),
-      ...process.env,
       ...plan.env,
       // In the demo both are played on this machine, whatever a real station's settings say.
       ...(plan.demo

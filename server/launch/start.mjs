@@ -1,4 +1,4 @@
-import { readFileSync } from 'node:fs';
+import { existsSync, readFileSync } from 'node:fs';
 import { once } from 'node:events';
 import { join } from 'node:path';
 import { fileURLToPath } from 'node:url';
@@ -55,20 +55,18 @@ function makePlan({ demo, env }, besides) {
   };
 }
 
-/** Settings of a file `.env`, if there is one; what the environment says comes first. */
-function readSettings() {
-  /** @type {Record<string, string | undefined>} */
-  let fromFile = {};
-  try {
-    fromFile = util.parseEnv(readFileSync(join(root, '.env'), 'utf8'));
-  } catch (error) {
-    if (/** @type {NodeJS.ErrnoException} */ (error).code !== 'ENOENT') throw error;
-  }
-  const { DATABASE_URL, ...settings } = { ...fromFile, ...process.env };
+/**
+ * Settings of a file `.env`, if there is one; what the environment says comes first. Empty ones do not count.
+ *
+ * @param {import('./terminal.mjs').Terminal} terminal
+ */
+function readSettings(terminal) {
+  const path = join(root, '.env');
+  const fromFile = existsSync(path) ? util.parseEnv(readFileSync(path, 'utf8')) : {};
+  const filled = Object.entries({ ...fromFile, ...process.env }).filter(([, value]) => value !== '');
+  const { DATABASE_URL, ...settings } = Object.fromEntries(filled);
   if (DATABASE_URL !== undefined) {
-    throw new LaunchError(
-      'DATABASE_URL is set, but npm start keeps a database of its own. Unset it, or run for production: npm run build, then node dist/server.js and node dist/worker.js.',
-    );
+    terminal.line('  DATABASE_URL is set but not used: npm start keeps a database of its own.');
   }
   return settings;
 }
@@ -149,7 +147,7 @@ async function main() {
         ? 'Starting Whichwire with its demo station. Ctrl-C stops it.'
         : 'Starting Whichwire. Ctrl-C stops it.',
     );
-    const settings = readSettings();
+    const settings = readSettings(terminal);
     const onWait = (/** @type {string} */ holder) =>
       terminal.line(`  Waiting for another command in this folder: ${holder}.`);
     const running = await inTurn(root, `npm start, process ${process.pid}`, onWait, async () => {

@@ -26,16 +26,8 @@ const drainMs = 10_000;
 const deathsBeforeReady = 4;
 const tailLines = 12;
 
-/**
- * @param {{
- *   root: string,
- *   logFolder: string,
- *   say: (text: string) => void,
- *   onAnnouncement?: (text: string) => void,
- * }} options `onAnnouncement`: a log line may carry `"announce"`, a text for the person at the
- *   terminal (a set-up link, an account). It is shown there and, as it may hold a secret, kept out of the log file.
- */
-export function createSupervisor({ root, logFolder, say, onAnnouncement = () => undefined }) {
+/** @param {{ root: string, logFolder: string, say: (text: string) => void }} options */
+export function createSupervisor({ root, logFolder, say }) {
   const stopping = new AbortController();
   /** @type {Map<string, import('node:child_process').ChildProcess>} */
   const running = new Map();
