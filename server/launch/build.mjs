@@ -3,7 +3,7 @@ import { join } from 'node:path';
 import { fileURLToPath } from 'node:url';
 import { runOrFail } from './commands.mjs';
 import { fingerprint } from './fingerprint.mjs';
-import { createTerminal, printFailure } from './terminal.mjs';
+import { LaunchError, createTerminal, printFailure } from './terminal.mjs';
 
 /**
  * The production build: server, worker and scripts in one esbuild call, the client by Vite. Each
@@ -81,7 +81,9 @@ export async function buildServer(root, { terminal, force = false }) {
         // TypeORM tells migrations and entities apart by their class names.
         keepNames: true,
         tsconfig: 'tsconfig.json',
-        logLevel: 'warning',
+        logLevel: 'silent',
+      }).catch((error) => {
+        throw new LaunchError(error.message);
       });
     }),
   );

@@ -22,12 +22,14 @@ import { LaunchError } from './terminal.mjs';
 const firstPauseMs = 500;
 const longestPauseMs = 30_000;
 const provenAfterMs = 30_000;
-const drainMs = 10_000;
-const deathsBeforeReady = 4;
+const deathsBeforeReady = 3;
 const tailLines = 12;
 
-/** @param {{ root: string, logFolder: string, say: (text: string) => void }} options */
-export function createSupervisor({ root, logFolder, say }) {
+/**
+ * @param {{ root: string, logFolder: string, say: (text: string) => void, drainMs?: number }} options
+ *   `drainMs`: how long the processes may take to finish their work when they are asked to end
+ */
+export function createSupervisor({ root, logFolder, say, drainMs = 10_000 }) {
   const stopping = new AbortController();
   /** @type {Map<string, import('node:child_process').ChildProcess>} */
   const running = new Map();
@@ -100,7 +102,7 @@ export function createSupervisor({ root, logFolder, say }) {
       return Object.fromEntries([...running].map(([name, child]) => [name, child.pid]));
     },
 
-    /** Asks all to end, gives them ten seconds to drain, then forces them. Resolves when all are gone. */
+    /** Asks all to end, gives them `drainMs`, then forces them. Resolves when all are gone. */
     async stop() {
       stopping.abort();
       for (const child of running.values()) signalGroup(child.pid, 'SIGTERM');

@@ -20,9 +20,10 @@ const announceAfterMs = 1_000;
 
 /** @param {number} milliseconds */
 export function formatElapsed(milliseconds) {
-  const seconds = milliseconds / 1_000;
-  if (seconds < 60) return `${seconds.toFixed(1)} s`;
-  return `${Math.floor(seconds / 60)} min ${String(Math.round(seconds % 60)).padStart(2, '0')} s`;
+  const tenths = Math.round(milliseconds / 100);
+  if (tenths < 600) return `${(tenths / 10).toFixed(1)} s`;
+  const seconds = Math.round(milliseconds / 1_000);
+  return `${Math.floor(seconds / 60)} min ${String(seconds % 60).padStart(2, '0')} s`;
 }
 
 /**
