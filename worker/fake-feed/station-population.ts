@@ -1,6 +1,8 @@
 import type { BandMetres } from '../../shared/radio/bands.ts';
+import { positionOfCall, type CallPosition } from '../../shared/radio/call-position.ts';
+import { parseCallSign } from '../../shared/radio/call-sign.ts';
 import { pathTo, placeAt } from '../../shared/radio/geodesic.ts';
-import type { Place } from '../../shared/radio/place.ts';
+import { isRefusal, type Place } from '../../shared/radio/place.ts';
 import { createRandom, type Random } from '../../shared/stats/random.ts';
 import { noiseKey } from './hash-noise.ts';
 import { stationAreas, type StationArea } from './station-areas.ts';
@@ -30,6 +32,13 @@ export const populationSize = 450;
 /** Suffixes QRA to QUZ: Q-code groups, which the ITU keeps out of call signs, so nobody can own one. */
 function drawSuffix(random: Random): string {
   return `Q${random.pick(['R', 'S', 'T', 'U'])}${String.fromCharCode(65 + random.integer(26))}`;
+}
+
+function positionOf(call: string): CallPosition {
+  const parsed = parseCallSign(call);
+  const position = isRefusal(parsed) ? parsed : positionOfCall(parsed);
+  if (isRefusal(position)) throw new Error(`The simulated call ${call} has no place: ${position.reason}`);
+  return position;
 }
 
 /** Numbers of stations by area, in proportion to the weights (largest remainders), adding up to `size`. */
@@ -81,8 +90,13 @@ export function createStationPopulation(
         call = random.pick(area.prefixes) + random.pick([...area.digits]) + drawSuffix(random);
       } while (taken.has(call));
       taken.add(call);
+      const position = positionOf(call);
       // The root spreads stations evenly over the circle's area.
-      const place = placeAt(area, random.uniform() * 360, Math.sqrt(random.uniform()) * area.radiusKm);
+      const place = placeAt(
+        position,
+        random.uniform() * 360,
+        Math.sqrt(random.uniform()) * position.radiusKm,
+      );
       const { azimuthDeg, distanceKm } = pathTo(home, place);
       stations.push({
         call,
