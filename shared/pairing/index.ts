@@ -34,3 +34,4 @@ export {
   type SpotRow,
   type UnitRow,
 } from './from-rows.ts';
+export { packHeardOnly, packUnits, unpackHeardOnly, unpackUnits, type PairPack } from './pack.ts';
