@@ -1,4 +1,5 @@
 import type { ComparisonAnswer, ComparisonCell } from '../../../shared/contracts/comparison.ts';
+import type { ChartTokens } from '../../styles/chart-theme.ts';
 
 /** An invented answer for tests and screenshots: shaped like a real one, computed by no statistics. */
 export function fixtureAnswer(overrides: Partial<ComparisonAnswer> = {}): ComparisonAnswer {
@@ -192,3 +193,27 @@ function row(
     onlyB: 1,
   };
 }
+
+/** Colours that no two tokens share, so that a test can tell what was painted with what. */
+export const fixtureTokens: ChartTokens = {
+  theme: 'dark',
+  ground: '#010101',
+  surface: '#101010',
+  raised: '#202020',
+  line: '#303030',
+  edge: '#707070',
+  text: '#f0f0f0',
+  muted: '#a0a0a0',
+  accent: '#ffff00',
+  ok: '#00ff00',
+  caution: '#fff000',
+  danger: '#ff0000',
+  'diff-a': '#ff8000',
+  'diff-b': '#0080ff',
+  'diff-zero': '#101010',
+  hatch: '#606162',
+  font: 'sans-serif',
+  antennaLine: (colour) => `#00000${colour}`,
+  smallPx: 13,
+  bodyPx: 15,
+};

@@ -94,14 +94,6 @@ export function pictureSummary(
   const count = `${speaking.length} of ${countOf(cells.length, one)} with units ${
     speaking.length === 1 ? 'has' : 'have'
   } enough evidence.`;
-  if (low === high) return `${count} There, ${lowerFirst(sayOf(low, answer))}.`;
+  if (low === high) return `${count} For ${cellTitle(low, answer)}: ${betterWords(low.estimateDb!, answer)}.`;
   return `${count} From ${formatDb(low.estimateDb)} (${cellTitle(low, answer)}) to ${formatDb(high.estimateDb)} (${cellTitle(high, answer)}); positive means that ${answer.antennas.a.name} hears better.`;
-}
-
-function sayOf(cell: ComparisonCell, answer: ComparisonAnswer): string {
-  return `${cellTitle(cell, answer)}: ${betterWords(cell.estimateDb!, answer)}`;
-}
-
-function lowerFirst(text: string): string {
-  return text.charAt(0).toLowerCase() + text.slice(1);
 }
