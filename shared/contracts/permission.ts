@@ -10,6 +10,7 @@ export type Role = z.infer<typeof role>;
 export const permissions = {
   'station:read': ['manager', 'operator', 'analyst', 'contester'],
   'station:manage': ['manager'],
+  'position:write': ['manager', 'analyst'],
   'member:read': ['manager'],
   'member:manage': ['manager'],
   'token:manage': ['manager'],

@@ -1,0 +1,26 @@
+import type { Deps } from '../platform/deps.ts';
+import type { Route } from '../platform/route.ts';
+import { auditRoutes } from './audit/audit.routes.ts';
+import { authRoutes } from './auth/auth.routes.ts';
+import { profileRoutes } from './auth/profile.routes.ts';
+import { eventRoutes } from './events/event.routes.ts';
+import { healthRoutes } from './health/health.routes.ts';
+import { jobRoutes } from './jobs/job.routes.ts';
+import { memberRoutes } from './members/member.routes.ts';
+import { stationRoutes } from './station/station.routes.ts';
+import { tokenRoutes } from './tokens/token.routes.ts';
+
+/** Every route of the API. What is not in this list does not exist; tests walk it. */
+export function apiRoutes(deps: Deps): Route[] {
+  return [
+    ...healthRoutes(deps),
+    ...authRoutes(deps),
+    ...profileRoutes(deps),
+    ...stationRoutes(deps),
+    ...memberRoutes(deps),
+    ...tokenRoutes(deps),
+    ...auditRoutes(deps),
+    ...jobRoutes(deps),
+    ...eventRoutes(deps),
+  ];
+}
