@@ -26,14 +26,15 @@ export function blockSummary(
   const sumSnr = new Int32Array(sideCount);
   const speeds = new Int32Array(sideCount);
   const sumWpm = new Int32Array(sideCount);
-  const present: number[] = [];
+  const present = new Int32Array(sideCount);
+  let presentCount = 0;
   const countOfAntenna = new Int32Array(sides.antennas.length);
   const sidesOfAntenna = Array.from(sides.antennas, (): number[] => []);
   sides.antenna.forEach((antenna, side) => sidesOfAntenna[antenna]!.push(side));
 
   function addSpot(group: Group, i: number): void {
     const side = group.side[i]!;
-    if (count[side]!++ === 0) present.push(side);
+    if (count[side]!++ === 0) present[presentCount++] = side;
     countOfAntenna[sides.antenna[side]!]!++;
     sumSnr[side]! += group.snrDb[i]!;
     if (group.speedWpm[i]! > 0) speeds[side]!++;
@@ -84,9 +85,10 @@ export function blockSummary(
   }
 
   function closeBlock(group: Group, block: number): void {
-    for (let p = 0; p < present.length; p++) {
-      for (let q = p + 1; q < present.length; q++) {
-        const [sideP, sideQ] = [present[p]!, present[q]!];
+    for (let p = 0; p < presentCount; p++) {
+      for (let q = p + 1; q < presentCount; q++) {
+        const sideP = present[p]!;
+        const sideQ = present[q]!;
         if (sides.receiver[sideP] !== sides.receiver[sideQ]) continue;
         // Sides of one receiver ascend by antenna.
         addAlternatingUnit(group, block, Math.min(sideP, sideQ), Math.max(sideP, sideQ));
@@ -94,19 +96,21 @@ export function blockSummary(
     }
     const pairs = listening.comparablePairs(block);
     for (let k = 0; k < pairs.length; k += 2) {
-      const [antennaA, antennaB] = [pairs[k]!, pairs[k + 1]!];
+      const antennaA = pairs[k]!;
+      const antennaB = pairs[k + 1]!;
       if (countOfAntenna[antennaA]! > 0 !== countOfAntenna[antennaB]! > 0) {
         addHeardOnly(group, block, antennaA, antennaB);
       }
     }
-    for (const side of present) {
+    for (let p = 0; p < presentCount; p++) {
+      const side = present[p]!;
       count[side] = 0;
       sumSnr[side] = 0;
       speeds[side] = 0;
       sumWpm[side] = 0;
       countOfAntenna[sides.antenna[side]!] = 0;
     }
-    present.length = 0;
+    presentCount = 0;
   }
 
   return {

@@ -98,10 +98,7 @@ export function unpackUnits(packs: readonly Uint8Array[]): UnitColumns {
     units.sumSnrA.set(body.sumSnrA, at);
     units.sumSnrB.set(body.sumSnrB, at);
     units.speedWpm.set(body.speedWpm, at);
-    const { sumSnrA, countA, sumSnrB, countB } = body;
-    for (let i = 0; i < header.count; i++) {
-      units.differenceDb[at + i] = differenceOfMeans(sumSnrA[i]!, countA[i]!, sumSnrB[i]!, countB[i]!);
-    }
+    fillDifferences(units.differenceDb, body, at);
     at += header.count;
   }
   return units;
@@ -292,6 +289,13 @@ function heardOnlyBody(pack: Packed) {
   };
 }
 
+function fillDifferences(differenceDb: Float64Array, body: ReturnType<typeof unitBody>, at: number): void {
+  const { sumSnrA, countA, sumSnrB, countB } = body;
+  for (let i = 0; i < sumSnrA.length; i++) {
+    differenceDb[at + i] = differenceOfMeans(sumSnrA[i]!, countA[i]!, sumSnrB[i]!, countB[i]!);
+  }
+}
+
 /** Fills what units and heard-only rows have in common, from row `at` on. */
 function fillShared(
   target: SharedColumns,
@@ -302,15 +306,16 @@ function fillShared(
 ): void {
   const { count, routes, blockMinutes, firstBlockMinute } = header;
   const { route, block } = body;
+  const { band, receiverA, receiverB, blockMinute } = target;
   target.antennaA.fill(header.antennaA, at, at + count);
   target.antennaB.fill(header.antennaB, at, at + count);
   target.call.set(body.call, at);
   for (let i = 0; i < count; i++) {
     const entry = route[i]! * ROUTE_FIELDS;
-    target.band[at + i] = routes[entry]!;
-    target.receiverA[at + i] = routes[entry + 1]!;
-    target.receiverB[at + i] = routes[entry + 2]!;
+    band[at + i] = routes[entry]!;
+    receiverA[at + i] = routes[entry + 1]!;
+    receiverB[at + i] = routes[entry + 2]!;
     kind[at + i] = routes[entry + 3]!;
-    target.blockMinute[at + i] = firstBlockMinute + block[i]! * blockMinutes;
+    blockMinute[at + i] = firstBlockMinute + block[i]! * blockMinutes;
   }
 }

@@ -56,7 +56,7 @@ export function pairSpots(
   const matcher = simultaneousMatcher(sides, rules, range, capacity, units);
   const summary = blockSummary(sides, range, listening, units, heardOnly);
   const tallies = tagTallies(index.sides);
-  const gatherer = groupGatherer(input, tags, index, range, tallies);
+  const gatherer = groupGatherer(input, tags, index, range, capacity, tallies);
 
   const group = emptyGroup(capacity);
   let from = 0;
@@ -117,15 +117,17 @@ function groupGatherer(
   tags: { position: Int32Array; tag: Uint8Array },
   index: DwellIndex,
   range: BlockRange,
+  capacity: number,
   tallies: TagTallies,
 ): GroupGatherer {
   let doubles = 0;
   // Receiver and frequency of the spots of the present second, guarded and untagged ones too.
-  const seenReceivers: number[] = [];
-  const seenFrequencies: number[] = [];
+  const seenReceivers = new Int32Array(capacity);
+  const seenFrequencies = new Int32Array(capacity);
+  let seen = 0;
 
   function isSeen(receiver: number, freq100Hz: number): boolean {
-    for (let k = 0; k < seenReceivers.length; k++) {
+    for (let k = 0; k < seen; k++) {
       if (seenReceivers[k] === receiver && seenFrequencies[k] === freq100Hz) return true;
     }
     return false;
@@ -146,14 +148,13 @@ function groupGatherer(
         const freq100Hz = spots.freq100Hz[row]!;
         if (Math.floor(timeMs / 1000) !== second) {
           second = Math.floor(timeMs / 1000);
-          seenReceivers.length = 0;
-          seenFrequencies.length = 0;
+          seen = 0;
         } else if (isSeen(receiver, freq100Hz)) {
           if (counts) doubles++;
           continue;
         }
-        seenReceivers.push(receiver);
-        seenFrequencies.push(freq100Hz);
+        seenReceivers[seen] = receiver;
+        seenFrequencies[seen++] = freq100Hz;
 
         const tag = tags.tag[row]!;
         if (tag === TAGGED) {

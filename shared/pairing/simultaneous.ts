@@ -42,28 +42,29 @@ export function simultaneousMatcher(
   // One burst, its spots laid side by side: those of `present[k]` at `begin[k]` to `begin[k + 1] - 1`.
   const countOfSide = new Int32Array(sideCount);
   const fillOfSide = new Int32Array(sideCount);
-  const present: number[] = [];
-  const begin: number[] = [];
+  const present = new Int32Array(sideCount);
+  let presentCount = 0;
+  const begin = new Int32Array(sideCount + 1);
   const times = new Float64Array(capacity);
   const spot = new Int32Array(capacity);
   const nearest = new Int32Array(capacity);
 
   function layOut(group: Group, from: number, to: number): void {
-    present.length = 0;
-    begin.length = 0;
+    presentCount = 0;
     for (let i = from; i < to; i++) {
       const side = group.side[i]!;
-      if (countOfSide[side]!++ === 0) present.push(side);
+      if (countOfSide[side]!++ === 0) present[presentCount++] = side;
     }
     let at = 0;
-    for (const side of present) {
-      begin.push(at);
+    for (let k = 0; k < presentCount; k++) {
+      const side = present[k]!;
+      begin[k] = at;
       fillOfSide[side] = at;
       at += countOfSide[side]!;
       countOfSide[side] = 0;
     }
-    begin.push(at);
-    if (present.length === 1) return;
+    begin[presentCount] = at;
+    if (presentCount === 1) return;
     for (let i = from; i < to; i++) {
       const place = fillOfSide[group.side[i]!]!++;
       times[place] = group.timeMs[i]!;
@@ -91,7 +92,10 @@ export function simultaneousMatcher(
   }
 
   function matchSides(group: Group, a: number, b: number): number {
-    const [fromA, toA, fromB, toB] = [begin[a]!, begin[a + 1]!, begin[b]!, begin[b + 1]!];
+    const fromA = begin[a]!;
+    const toA = begin[a + 1]!;
+    const fromB = begin[b]!;
+    const toB = begin[b + 1]!;
     nearestInTime(times, fromA, toA, fromB, toB, nearest);
     nearestInTime(times, fromB, toB, fromA, toA, nearest);
     let matches = 0;
@@ -106,7 +110,8 @@ export function simultaneousMatcher(
       const row = unitOf(group, present[a]!, present[b]!, block);
       rows.addA(row, 1, group.snrDb[spotA]!);
       rows.addB(row, 1, group.snrDb[spotB]!);
-      const [wpmA, wpmB] = [group.speedWpm[spotA]!, group.speedWpm[spotB]!];
+      const wpmA = group.speedWpm[spotA]!;
+      const wpmB = group.speedWpm[spotB]!;
       rows.addSpeed(row, (wpmA > 0 ? 1 : 0) + (wpmB > 0 ? 1 : 0), wpmA + wpmB);
       matches++;
     }
@@ -116,9 +121,10 @@ export function simultaneousMatcher(
   function matchBurst(group: Group, from: number, to: number): number {
     layOut(group, from, to);
     let matches = 0;
-    for (let p = 0; p < present.length; p++) {
-      for (let q = p + 1; q < present.length; q++) {
-        const [sideP, sideQ] = [present[p]!, present[q]!];
+    for (let p = 0; p < presentCount; p++) {
+      for (let q = p + 1; q < presentCount; q++) {
+        const sideP = present[p]!;
+        const sideQ = present[q]!;
         if (sides.receiver[sideP] === sides.receiver[sideQ]) continue;
         const order = sides.antenna[sideP]! - sides.antenna[sideQ]!;
         if (order < 0) matches += matchSides(group, p, q);
