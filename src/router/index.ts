@@ -1,0 +1,44 @@
+import { createRouter, createWebHistory } from 'vue-router';
+import type { Router, RouterHistory } from 'vue-router';
+import { may } from '../../shared/contracts/permission.ts';
+import { useSessionStore } from '../stores/session.ts';
+import { homeOf } from './home.ts';
+import { routes } from './routes.ts';
+
+export const productName = 'Whichwire';
+
+/** The router with its guards; pinia must be installed first. Tests pass a memory history. */
+export function createAppRouter(history: RouterHistory = createWebHistory()): Router {
+  const router = createRouter({
+    history,
+    routes,
+    scrollBehavior: (to, from, saved) => saved ?? (to.path === from.path ? false : { top: 0 }),
+  });
+
+  router.beforeEach(async (to) => {
+    const session = useSessionStore();
+    if (to.meta.isPublic && to.name !== 'sign-in') return true;
+    await session.restore();
+    const { profile } = session;
+    if (to.name === 'sign-in') return profile ? { name: 'home' } : true;
+    if (!profile) return { name: 'sign-in', query: to.fullPath === '/' ? {} : { next: to.fullPath } };
+    if (to.name === 'home') return homeOf(profile, Number(to.query.station) || undefined) ?? true;
+    // A foreign station and one that never was look the same; so do pages beyond the person's role.
+    const membership = profile.memberships.find((each) => each.stationId === Number(to.params.stationId));
+    const permitted = membership && (!to.meta.permission || may(membership.role, to.meta.permission));
+    if (permitted) return true;
+    return {
+      name: 'not-found',
+      params: { path: to.path.slice(1).split('/') },
+      query: to.query,
+      hash: to.hash,
+    };
+  });
+
+  router.afterEach((to, _from, failure) => {
+    if (failure) return;
+    document.title = to.meta.title ? `${to.meta.title} - ${productName}` : productName;
+  });
+
+  return router;
+}

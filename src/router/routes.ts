@@ -1,0 +1,98 @@
+import type { Component } from 'vue';
+import type { RouteRecordRaw } from 'vue-router';
+import type { Permission } from '../../shared/contracts/permission.ts';
+
+declare module 'vue-router' {
+  interface RouteMeta {
+    /** Title of the document, before the product's name. */
+    title?: string;
+    /** May be seen without being signed in. */
+    isPublic?: boolean;
+    /** What the person must be allowed at the station of the route. */
+    permission?: Permission;
+  }
+}
+
+/** The pages of a station: route names, and the keys of the rail's icons. */
+export type StationPageName =
+  'tonight' | 'compare' | 'switching' | 'spots' | 'imports' | 'station' | 'members' | 'settings';
+
+export interface StationPage {
+  /** Route name, and its path below /s/:stationId/. */
+  name: StationPageName;
+  /** Word under the icon, and the document's title. */
+  word: string;
+  permission: Permission;
+  view: () => Promise<Component>;
+}
+
+/**
+ * The table of pages, in the order of the rail; one line each. On a phone the first three that the person may see
+ * get a place in the bottom bar, the rest is behind "More".
+ */
+export const stationPages: readonly StationPage[] = [
+  {
+    name: 'settings',
+    word: 'Settings',
+    permission: 'station:read',
+    view: () => import('../views/SettingsView.vue'),
+  },
+];
+
+export const routes: RouteRecordRaw[] = [
+  {
+    path: '/',
+    name: 'home',
+    component: () => import('../views/NoStationView.vue'),
+    meta: { title: 'No station' },
+  },
+  {
+    path: '/sign-in',
+    name: 'sign-in',
+    component: () => import('../views/SignInView.vue'),
+    meta: { title: 'Sign in', isPublic: true },
+  },
+  {
+    path: '/invitation',
+    name: 'invitation',
+    component: () => import('../views/InvitationView.vue'),
+    meta: { title: 'Invitation', isPublic: true },
+  },
+  {
+    path: '/password-reset',
+    name: 'password-reset',
+    component: () => import('../views/PasswordResetView.vue'),
+    meta: { title: 'New password', isPublic: true },
+  },
+  {
+    path: '/set-up',
+    name: 'set-up',
+    component: () => import('../views/SetUpView.vue'),
+    meta: { title: 'Set up', isPublic: true },
+  },
+  {
+    path: '/demo-mail',
+    name: 'demo-mail',
+    component: () => import('../views/DemoMailView.vue'),
+    meta: { title: 'Demo mail', isPublic: true },
+  },
+  {
+    path: String.raw`/s/:stationId(\d+)`,
+    component: () => import('../views/StationFrameView.vue'),
+    children: [
+      { path: '', redirect: (to) => ({ name: 'home', query: { station: to.params.stationId } }) },
+      ...stationPages.map(({ name, word, permission, view }): RouteRecordRaw => ({
+        path: name,
+        name,
+        component: view,
+        meta: { title: word, permission },
+      })),
+    ],
+  },
+  {
+    path: '/:path(.*)*',
+    name: 'not-found',
+    component: () => import('../views/NotFoundView.vue'),
+    meta: { title: 'Not found', isPublic: true },
+  },
+];
