@@ -133,8 +133,9 @@ export function compileOverrides(entries: readonly PositionOverride[]): Compiled
  */
 export function positionOfCall(parsed: CallSign, overrides?: CompiledOverrides): CallPosition | Refusal {
   if (parsed.mobile !== null) {
-    const where = parsed.mobile === 'maritime' ? 'at sea' : 'in the air';
-    return { reason: `${parsed.call} is ${where}: a ${parsed.mobile} mobile station has no bearing.` };
+    const station =
+      parsed.mobile === 'maritime' ? 'at sea: a maritime mobile' : 'in the air: an aeronautical mobile';
+    return { reason: `${parsed.call} is ${station} station has no bearing.` };
   }
   const holder = holderOf(parsed.location);
   const entry = areaOf(parsed.location, holder);

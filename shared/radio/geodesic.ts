@@ -6,6 +6,7 @@ import geodesic from 'geographiclib-geodesic';
 import type { Place } from './place.ts';
 
 const wgs84 = geodesic.Geodesic.WGS84;
+const wanted = geodesic.Geodesic.DISTANCE | geodesic.Geodesic.AZIMUTH | geodesic.Geodesic.REDUCEDLENGTH;
 const metresPerKm = 1000;
 const meanEarthRadiusKm = 6371.0088;
 const degrees = 180 / Math.PI;
@@ -33,14 +34,21 @@ function checkPlace(name: string, place: Place): void {
   }
 }
 
-function inverse(from: Place, to: Place): Path & { arcDeg: number } {
+interface FullPath extends Path {
+  arcDeg: number;
+  /** Metres by which the far end moves sideways for each radian of azimuth at the near end. */
+  reducedLength: number;
+}
+
+function inverse(from: Place, to: Place): FullPath {
   checkPlace('from', from);
   checkPlace('to', to);
-  const line = wgs84.Inverse(from.latitude, from.longitude, to.latitude, to.longitude);
+  const line = wgs84.Inverse(from.latitude, from.longitude, to.latitude, to.longitude, wanted);
   return {
     azimuthDeg: normaliseAzimuth(line.azi1 ?? 0),
     distanceKm: (line.s12 ?? 0) / metresPerKm,
     arcDeg: line.a12,
+    reducedLength: line.m12 ?? 0,
   };
 }
 
@@ -57,22 +65,25 @@ export function placeAt(from: Place, azimuthDeg: number, distanceKm: number): Pl
   return { latitude: end.lat2 ?? from.latitude, longitude: end.lon2 ?? from.longitude };
 }
 
-function spread(arcDeg: number, radiusKm: number): number {
+function spread({ arcDeg, reducedLength }: FullPath, radiusKm: number): number {
   if (!(radiusKm >= 0)) throw new RangeError(`radiusKm must be zero or more, was ${radiusKm}`);
   const radius = radiusKm / meanEarthRadiusKm;
   const arc = arcDeg / degrees;
   if (radius >= arc || radius >= Math.PI - arc) return 360;
-  return 2 * Math.asin(Math.min(1, Math.sin(radius) / Math.sin(arc))) * degrees;
+  const sidewaysArc = reducedLength / metresPerKm / meanEarthRadiusKm;
+  if (!(sidewaysArc > 0)) return 360;
+  return 2 * Math.asin(Math.min(1, Math.sin(radius) / sidewaysArc)) * degrees;
 }
 
 /**
  * The whole angle, in degrees, that a circle of uncertainty around `to` fills as seen from `from`:
- * 2 asin(sin(radius) / sin(arc)), the two tangents of the circle on the sphere. 360 when the circle
- * holds the station itself or its antipode, where any bearing is possible. The earth's flattening
- * changes it by under 1 % of itself, far below what a radius of uncertainty is known to.
+ * between its two tangents, 2 asin(sin(radius) / sin(arc)) on the sphere. In place of sin(arc) stands
+ * the reduced length of the geodesic, which carries the earth's flattening (it matters toward the
+ * antipode). 360 when the circle holds the station itself or its antipode, where any bearing is
+ * possible.
  */
 export function bearingSpreadDeg(from: Place, to: Place, radiusKm: number): number {
-  return spread(inverse(from, to).arcDeg, radiusKm);
+  return spread(inverse(from, to), radiusKm);
 }
 
 /** `pathTo` and `bearingSpreadDeg` for the price of one geodesic. */
@@ -81,8 +92,9 @@ export function pathWithSpread(
   to: Place,
   radiusKm: number,
 ): Path & { bearingSpreadDeg: number } {
-  const { azimuthDeg, distanceKm, arcDeg } = inverse(from, to);
-  return { azimuthDeg, distanceKm, bearingSpreadDeg: spread(arcDeg, radiusKm) };
+  const path = inverse(from, to);
+  const { azimuthDeg, distanceKm } = path;
+  return { azimuthDeg, distanceKm, bearingSpreadDeg: spread(path, radiusKm) };
 }
 
 function checkSectorCount(sectorCount: number): void {
