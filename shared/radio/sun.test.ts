@@ -74,13 +74,13 @@ describe('sunset and sunrise of a night', () => {
 
   // astronomy-engine 2.1, SearchAltitude for the same -0.833 degrees.
   it.each([
-    ['the equator', at(0, 0), 15],
-    ['IO53', io53, 30],
-    ['Tokyo Bay', at(35.6, 139.8), 20],
-    ['New Zealand', at(-41, 174.9), 20],
-    ['the Aleutians across the date line', at(52, -176), 30],
-    ['Patagonia', at(-53, -70), 30],
-    ['Iceland', at(65, -18), 120],
+    ['the equator', at(0, 0), 10],
+    ['IO53', io53, 10],
+    ['Tokyo Bay', at(35.6, 139.8), 10],
+    ['New Zealand', at(-41, 174.9), 10],
+    ['the Aleutians across the date line', at(52, -176), 10],
+    ['Patagonia', at(-53, -70), 10],
+    ['Iceland', at(65, -18), 30],
   ])('agree with astronomy-engine through a year at %s', (_name, place, toleranceSeconds) => {
     for (const night of year) {
       const startMs = nightStartMs(night, place.longitude);
