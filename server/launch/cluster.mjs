@@ -12,7 +12,7 @@ import {
   writeFileSync,
 } from 'node:fs';
 import { tmpdir } from 'node:os';
-import { join } from 'node:path';
+import { basename, dirname, join } from 'node:path';
 import { setTimeout as delay } from 'node:timers/promises';
 import { run, runOrFail } from './commands.mjs';
 import { databaseAccount, findAccount, findPostgres } from './debian.mjs';
@@ -170,10 +170,9 @@ function removeAbandoned(parent) {
  */
 export async function makeCluster({ home, account, durable, signal }) {
   const binaries = requirePostgres();
-  const making = `${home}.making`;
-  await endLeftovers(join(making, 'data'));
-  rmSync(making, { recursive: true, force: true, maxRetries: 5, retryDelay: 100 });
-  mkdirSync(making, { mode: 0o700 });
+  await removeHalfMade(home);
+  // A name of its own each time: an initdb whose launcher was killed may still be tidying up its own.
+  const making = mkdtempSync(`${home}.making-`);
   /** @type {Passwords} */
   const passwords = { [governor]: makeSecret(), [owner]: makeSecret() };
   const passwordPath = join(making, 'password');
@@ -190,6 +189,24 @@ export async function makeCluster({ home, account, durable, signal }) {
   );
   rmSync(passwordPath);
   renameSync(making, home);
+}
+
+/**
+ * What broken-off starts have left: at most disk space, so what cannot be removed now stays for the next start.
+ *
+ * @param {string} home
+ */
+async function removeHalfMade(home) {
+  const prefix = `${basename(home)}.making-`;
+  for (const name of readdirSync(dirname(home)).filter((one) => one.startsWith(prefix))) {
+    const folder = join(dirname(home), name);
+    await endLeftovers(join(folder, 'data'));
+    try {
+      rmSync(folder, { recursive: true, force: true, maxRetries: 5, retryDelay: 100 });
+    } catch (error) {
+      if (/** @type {NodeJS.ErrnoException} */ (error).code !== 'ENOTEMPTY') throw error;
+    }
+  }
 }
 
 /**
