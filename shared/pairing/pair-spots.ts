@@ -23,13 +23,16 @@ import { tagTallies, type TagTallies } from './tallies.ts';
  * Spots may come in any order and the answer does not depend on it; in order of time they save sorting
  * passes. They must reach beyond the window by what `spotsNeeded` says, or units at its edges can differ
  * from those of a run over everything. Adjoining windows then give, together, the units of one run over
- * both. Dwells must cover the same stretch; give an open dwell an end of Infinity, or of the present
- * time when the last block is still running.
+ * both. Dwells that touch that stretch must be given whole: one cut off at the stretch's start would get
+ * a guard there that no switch caused. An open dwell ends at Infinity, or at the present time while the
+ * last block is still running.
  *
  * Simultaneous units: see `simultaneousMatcher`. Alternating units and heard-only: see `blockSummary`.
  * Of spots equal in receiver, second, call and frequency the earliest (then the strongest) stands.
- * Time O(n) for n spots and a handful of receivers, memory about 60 bytes a spot. Throws RangeError
- * for columns of unequal length, a time that is no number, or unusable dwells, rules or window.
+ * Time O(n) for n spots and a handful of receivers, memory about 30 bytes a spot beside the answer. A
+ * season night after night takes half the time of one run, since a night fits the processor's cache.
+ * Throws RangeError for columns of unequal length, a time that is no number, or unusable dwells, rules
+ * or window.
  */
 export function pairSpots(
   input: SpotColumns,

@@ -9,7 +9,7 @@ const BANDS = [40, 80, 160] as const;
 /** All four nights: 2026-01-05 noon to 2026-01-12 noon. */
 const WINDOW = { startMs: Date.UTC(2026, 0, 5, 12), endMs: Date.UTC(2026, 0, 12, 12) };
 
-/** Worked in R from the same rules, by another hand: see sample-station/README.md. */
+/** Each with its answers in R, worked from the same rules by another hand: see sample-station/README.md. */
 const SETS = ['swap', 'alternate'] as const;
 
 interface Unit {
@@ -142,5 +142,24 @@ describe('the sample station, estimates against R', () => {
     const cOnB = mean(own.filter((unit) => unit.receiverB === receiverC).map((unit) => unit.differenceDb));
     expect((cOnA + cOnB) / 2).toBeCloseTo(expected.swap.byBand[band].estimate, 8);
     expect((cOnA - cOnB) / 2).toBeCloseTo(expected.swap.byBand[band].offsets, 8);
+  });
+
+  it('finds the antenna difference of swap over all bands as R does', () => {
+    const { station, units } = paired('swap');
+    const receiverC = station.receiverIds.get('EI7QSC')!;
+    // Least squares with one receiver column a band: the constant and the differences are each cleared
+    // of that column within the band (Frisch and Waugh 1933), then theta is a ratio of sums.
+    let numerator = 0;
+    let denominator = 0;
+    for (const band of BANDS) {
+      const own = units.filter((unit) => unit.band === band);
+      const z = own.map((unit) => (unit.receiverA === receiverC ? 1 : -1));
+      const sumZ = z.reduce<number>((sum, value) => sum + value, 0);
+      const sumD = own.reduce((sum, unit) => sum + unit.differenceDb, 0);
+      const sumZd = own.reduce((sum, unit, i) => sum + z[i]! * unit.differenceDb, 0);
+      numerator += sumD - (sumZ * sumZd) / own.length;
+      denominator += own.length - (sumZ * sumZ) / own.length;
+    }
+    expect(numerator / denominator).toBeCloseTo(expected.swap.all.estimate, 8);
   });
 });
