@@ -35,6 +35,15 @@ describe('nights', () => {
     );
   });
 
+  it('refuses an instant or a longitude that is no number', () => {
+    expect(() => nightIndexOf(Number.NaN, -9)).toThrow(
+      new RangeError('timeMs and longitudeDeg must be finite numbers, were NaN and -9'),
+    );
+    expect(() => nightIndexOf(0, Infinity)).toThrow(
+      new RangeError('timeMs and longitudeDeg must be finite numbers, were 0 and Infinity'),
+    );
+  });
+
   it('reads back the date it writes', () => {
     fc.assert(
       fc.property(fc.integer({ min: -20_000, max: 60_000 }), (index) => {

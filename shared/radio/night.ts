@@ -20,10 +20,16 @@ export function solarOffsetMs(longitudeDeg: number): number {
  * The night of an instant.
  * @param timeMs milliseconds since 1970-01-01T00:00Z
  * @param longitudeDeg the station's longitude, east positive
- * @returns whole days since 1970-01-01 of the night's date
+ * @returns whole days since 1970-01-01 of the night's date; throws a RangeError when either is not finite
  */
 export function nightIndexOf(timeMs: number, longitudeDeg: number): number {
-  return Math.floor((timeMs + solarOffsetMs(longitudeDeg) - noonMs) / dayMs);
+  const index = Math.floor((timeMs + solarOffsetMs(longitudeDeg) - noonMs) / dayMs);
+  if (!Number.isFinite(index)) {
+    throw new RangeError(
+      `timeMs and longitudeDeg must be finite numbers, were ${timeMs} and ${longitudeDeg}`,
+    );
+  }
+  return index;
 }
 
 /** 'YYYY-MM-DD' of a night: the date on which its evening falls in local solar time. */

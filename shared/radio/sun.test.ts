@@ -48,6 +48,17 @@ describe('sun altitude', () => {
   });
 });
 
+describe('sun altitude of nonsense', () => {
+  it('is refused by name, since NaN would read as daylight', () => {
+    expect(() => sunAltitudeDeg(Number.NaN, io53)).toThrow(
+      new RangeError('timeMs must be a finite number of milliseconds'),
+    );
+    expect(() => sunAltitudeDeg(0, at(Number.NaN, 0))).toThrow(
+      new RangeError('place must have finite coordinates, was latitude NaN, longitude 0'),
+    );
+  });
+});
+
 describe('path state', () => {
   it.each([
     [-20, -0.84, 'both dark', true],

@@ -55,7 +55,10 @@ interface Hour {
 export class Sun {
   private readonly hours = new Map<number, Hour>();
 
-  /** Geometric altitude in degrees of the sun's centre at an instant (ms since 1970) and a place. */
+  /**
+   * Geometric altitude in degrees of the sun's centre at an instant (ms since 1970) and a place.
+   * Throws a RangeError for an instant or a place that is not finite: NaN would read as daylight.
+   */
   altitudeDeg(timeMs: number, place: Place): number {
     const hourIndex = Math.floor(timeMs / hourMs);
     const hour = this.hourOf(hourIndex);
@@ -66,6 +69,11 @@ export class Sun {
     const hourAngle = (place.longitude - hour.longitude - fraction * hour.longitudeStep) * radians;
     const sine =
       Math.sin(latitude) * sinDeclination + Math.cos(latitude) * cosDeclination * Math.cos(hourAngle);
+    if (Number.isNaN(sine)) {
+      throw new RangeError(
+        `place must have finite coordinates, was latitude ${place.latitude}, longitude ${place.longitude}`,
+      );
+    }
     return Math.asin(Math.max(-1, Math.min(1, sine))) / radians;
   }
 
@@ -82,6 +90,7 @@ export class Sun {
   private hourOf(hourIndex: number): Hour {
     let hour = this.hours.get(hourIndex);
     if (hour === undefined) {
+      if (!Number.isFinite(hourIndex)) throw new RangeError('timeMs must be a finite number of milliseconds');
       // A wall screen runs for years: forget everything rather than grow for ever.
       if (this.hours.size >= 13_000) this.hours.clear();
       hour = makeHour(hourIndex);
