@@ -30,7 +30,7 @@ const minuteMs = 60_000;
 /** Runs on the air in an average night, sized so that three receivers report some 30,000 spots. */
 const runsPerNight = 1000;
 /** A path whose median level is this gets half of its stations on the air, dB. */
-const workableLevelDb = 5;
+const workableLevelDb = 9;
 
 const cwSegmentsKhz: ReadonlyMap<BandMetres, readonly [number, number]> = new Map([
   [160, [1810.5, 1838]],
