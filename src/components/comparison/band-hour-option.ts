@@ -3,7 +3,7 @@ import type { ComparisonAnswer, ComparisonCell } from '../../../shared/contracts
 import { hatchDecal } from '../../styles/chart-theme.ts';
 import { formatBand, formatSigned } from '../../styles/format.ts';
 import { cellTitle, cellWords, hourLabel, lightsUp } from './cell-words.ts';
-import { cellStyle, colourKey, colourKeyHeightPx, inkOn } from './picture.ts';
+import { cellStyle, colourKey, colourKeyHeightPx, inkOn, overlay } from './picture.ts';
 import type { Picture, PictureContext } from './picture.ts';
 import { emptyCell } from './rose-option.ts';
 
@@ -49,7 +49,7 @@ export function bandHourPicture(context: PictureContext): Picture {
   );
   const rows = compact ? hours.length : bands.length;
   const rowPx = compact ? 24 : Math.max(30, Math.min(64, 220 / Math.max(1, rows)));
-  const box = { left: 52, right: 26, top: 34, bottom: colourKeyHeightPx + 12 };
+  const box = { left: 52, right: 26, top: 46, bottom: colourKeyHeightPx + 12 };
   const key = colourKey(context, 1, { left: box.left, right: box.right });
   const hourName = basis === 'utc' ? 'UTC hour' : `hours from ${basis}`;
   const label = { color: tokens.muted, fontSize: tokens.smallPx, interval: 0 };
@@ -59,8 +59,6 @@ export function bandHourPicture(context: PictureContext): Picture {
     data: hours.map((hour) => hourLabel(hour, basis)),
     axisLabel: label,
     axisLine: { show: false },
-    name: hourName,
-    nameTextStyle: { color: tokens.muted, fontSize: tokens.smallPx },
   };
   const bandAxis = { ...axis, data: bands.map(formatBand), axisLabel: label, axisLine: { show: false } };
   const map: CustomSeriesOption = {
@@ -102,24 +100,17 @@ export function bandHourPicture(context: PictureContext): Picture {
       };
     },
   };
+  const hourTitle = overlay('hour-title', 0, 2, () => ({
+    type: 'text',
+    style: { text: hourName, x: 2, y: 4, fill: tokens.muted, font: `400 ${tokens.smallPx}px ${tokens.font}` },
+  }));
   return {
     heightPx: box.top + box.bottom + Math.max(1, rows) * rowPx + (compact ? 0 : 8),
     cells: cells.map((cell) => ({ title: cellTitle(cell, answer), words: cellWords(cell, answer), cell })),
     option: {
       animation: false,
       grid: [{ ...box, containLabel: false }, key.grid],
-      xAxis: [
-        compact
-          ? { ...bandAxis, position: 'top' }
-          : {
-              ...hourAxis,
-              position: 'top',
-              nameLocation: 'start',
-              nameGap: 0,
-              nameTextStyle: nameStyle(tokens),
-            },
-        key.xAxis,
-      ],
+      xAxis: [compact ? { ...bandAxis, position: 'top' } : { ...hourAxis, position: 'top' }, key.xAxis],
       yAxis: [
         compact
           ? {
@@ -132,11 +123,7 @@ export function bandHourPicture(context: PictureContext): Picture {
           : { ...bandAxis, inverse: true },
         key.yAxis,
       ],
-      series: [map, ...key.series],
+      series: [map, hourTitle, ...key.series],
     },
   };
-}
-
-function nameStyle(tokens: PictureContext['tokens']) {
-  return { color: tokens.muted, fontSize: tokens.smallPx, align: 'left' as const };
 }

@@ -110,8 +110,8 @@ export function differenceGround(
           style: { fill: tokens.edge, opacity: 0.2 },
         },
         verticalLine(at(0), top, height, { stroke: tokens.text, lineWidth: 1.25 }),
-        side(`\u2190 ${answer.antennas.b.name} better`, 'left'),
-        side(`${answer.antennas.a.name} better \u2192`, 'right'),
+        side(`\u2190 ${answer.antennas.b.name}${context.compact ? '' : ' better'}`, 'left'),
+        side(`${answer.antennas.a.name}${context.compact ? '' : ' better'} \u2192`, 'right'),
       ],
     };
   });
