@@ -304,12 +304,16 @@ async function startCluster({ home, account, settings, keepRunning, say, signal,
       input: sql,
       purpose: 'prepare the database',
     });
-  const stop = async () => {
+  const stopOnce = async () => {
     stopping.abort();
     await reviving;
     await stopPostmaster(postmaster.process, stopMode);
     await endLeftovers(dataFolder);
   };
+  /** @type {Promise<void> | null} */
+  let stopped = null;
+  // A second call must not touch the folder: another launcher may have opened it since.
+  const stop = () => (stopped ??= stopOnce());
   try {
     // Each start, because the very first one may have been broken off right here.
     await query(`

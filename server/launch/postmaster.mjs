@@ -72,24 +72,25 @@ export function processesIn(folder) {
  */
 export async function endLeftovers(dataFolder) {
   const startedAt = performance.now();
-  /** @type {[number, NodeJS.Signals][]} */
-  const escalation = [
-    [0, 'SIGINT'],
-    [10_000, 'SIGQUIT'],
-    [20_000, 'SIGKILL'],
-  ];
+  /** @type {Set<string>} who was told what */
+  const told = new Set();
   for (;;) {
     const left = processesIn(dataFolder);
     if (left.length === 0) return;
-    const elapsed = performance.now() - startedAt;
-    if (elapsed > leftoverDeadlineMs)
+    const elapsedMs = performance.now() - startedAt;
+    if (elapsedMs > leftoverDeadlineMs) {
       throw new LaunchError(`Processes ${left.join(', ')} still use ${dataFolder} and cannot be ended.`);
-    if (escalation[0] !== undefined && elapsed >= escalation[0][0]) {
-      const [, signal] = /** @type {[number, NodeJS.Signals]} */ (escalation.shift());
-      const main = readPostmasterFile(dataFolder)?.pid;
-      // The postmaster ends its children in good order; without one each is told for itself.
-      const targets = main !== undefined && left.includes(main) && signal !== 'SIGKILL' ? [main] : left;
-      for (const pid of targets) signalProcess(pid, main === pid || signal !== 'SIGINT' ? signal : 'SIGTERM');
+    }
+    const main = readPostmasterFile(dataFolder)?.pid;
+    const hasMain = main !== undefined && left.includes(main);
+    /** @type {NodeJS.Signals} */
+    const signal =
+      elapsedMs > 20_000 ? 'SIGKILL' : elapsedMs > 10_000 ? 'SIGQUIT' : hasMain ? 'SIGINT' : 'SIGTERM';
+    // The postmaster ends its children in good order; without one each is told for itself.
+    for (const pid of hasMain && signal !== 'SIGKILL' ? [main] : left) {
+      if (told.has(`${pid} ${signal}`)) continue;
+      told.add(`${pid} ${signal}`);
+      signalProcess(pid, signal);
     }
     await delay(pollMs);
   }

@@ -1,33 +1,24 @@
-import { execFileSync, spawn } from 'node:child_process';
+import { spawn } from 'node:child_process';
 import { once } from 'node:events';
 import {
   chmodSync,
   chownSync,
-  cpSync,
   existsSync,
   mkdirSync,
-  mkdtempSync,
   readFileSync,
   readdirSync,
-  rmSync,
   statSync,
   writeFileSync,
 } from 'node:fs';
-import { tmpdir } from 'node:os';
-import { dirname, join } from 'node:path';
+import { join } from 'node:path';
 import pg from 'pg';
 import { afterAll, afterEach, beforeAll, beforeEach, describe, expect, test, vi } from 'vitest';
 import type { Cluster } from '../../server/launch/cluster.mjs';
-import {
-  chooseHome,
-  makeCluster,
-  openStationCluster,
-  openThrowAwayCluster,
-} from '../../server/launch/cluster.mjs';
+import { chooseHome, openStationCluster, openThrowAwayCluster } from '../../server/launch/cluster.mjs';
 import { databaseAccount, findAccount } from '../../server/launch/debian.mjs';
 import { processesIn } from '../../server/launch/postmaster.mjs';
-import type { Workshop } from '../helpers/launch-workshop.ts';
-import { isAlive, openWorkshop } from '../helpers/launch-workshop.ts';
+import type { PreparedCluster, Workshop } from '../helpers/launch-workshop.ts';
+import { isAlive, openWorkshop, prepareCluster } from '../helpers/launch-workshop.ts';
 
 /**
  * The private database of `npm start`, on a real PostgreSQL: what a kill at the worst moment leaves behind,
@@ -42,14 +33,8 @@ let home: string;
 let said: string[];
 let opened: Cluster[];
 
-/** Clusters made once for all tests, without waiting for the disk: making one is the point of two tests only. */
-let prepared: string;
-
-function useThePrepared(): void {
-  const from = statSync(prepared);
-  cpSync(prepared, home, { recursive: true, preserveTimestamps: true });
-  if (account) execFileSync('chown', ['-R', `${from.uid}:${from.gid}`, home]);
-}
+/** Making a cluster is the point of few tests only; the others begin with a copy. */
+let prepared: PreparedCluster;
 
 const open = async () => {
   const cluster = await openStationCluster({ home, say: (text) => said.push(text) });
@@ -68,12 +53,10 @@ const openElsewhere = `
   setInterval(() => {}, 1000);`;
 
 beforeAll(async () => {
-  prepared = join(mkdtempSync(join(tmpdir(), 'launch-prepared-')), 'postgres');
-  chmodSync(dirname(prepared), 0o755);
-  await makeCluster({ home: prepared, account, durable: false });
+  prepared = await prepareCluster();
 });
 
-afterAll(() => rmSync(dirname(prepared), { recursive: true, force: true }));
+afterAll(() => prepared.remove());
 
 beforeEach(() => {
   workshop = openWorkshop();
@@ -129,7 +112,7 @@ describe('the database of a station', () => {
   });
 
   test('the program’s role may install the extension that the overlap constraint needs', async () => {
-    useThePrepared();
+    prepared.copyTo(home);
     const cluster = await open();
     await cluster.ensureDatabase('station');
     await ask(cluster.url('station'), 'CREATE EXTENSION btree_gist');
@@ -141,7 +124,7 @@ describe('the database of a station', () => {
   });
 
   test('stopping leaves no process behind, and what was written is there at the next start', async () => {
-    useThePrepared();
+    prepared.copyTo(home);
     const first = await open();
     await first.ensureDatabase('station');
     await ask(first.url('station'), 'CREATE TABLE kept AS SELECT 42 AS answer');
@@ -154,7 +137,7 @@ describe('the database of a station', () => {
   });
 
   test('a killed server process is replaced on the same port, and committed rows survive', async () => {
-    useThePrepared();
+    prepared.copyTo(home);
     const cluster = await open();
     await cluster.ensureDatabase('station');
     await ask(cluster.url('station'), 'CREATE TABLE kept AS SELECT 42 AS answer');
@@ -182,7 +165,7 @@ describe('after a kill at the worst moment', () => {
   });
 
   test('launcher and server killed with -9 leave a busy orphan on the old memory, which the next start gets over', async () => {
-    useThePrepared();
+    prepared.copyTo(home);
     const launcher = workshop.run(openElsewhere);
     const pid = Number((await launcher.waitForLine(/^pid /)).slice(4));
     const url = (await launcher.waitForLine(/^url /)).slice(4);
@@ -208,7 +191,7 @@ describe('after a kill at the worst moment', () => {
   });
 
   test('a postmaster.pid whose number belongs to a stranger now stops nobody, and the stranger is left alone', async () => {
-    useThePrepared();
+    prepared.copyTo(home);
     await (await open()).stop();
     const stranger = spawn('sleep', ['600'], {
       cwd: '/',
@@ -232,7 +215,7 @@ describe('after a kill at the worst moment', () => {
   });
 
   test('a launcher killed with -9 takes its server process with it', async () => {
-    useThePrepared();
+    prepared.copyTo(home);
     const launcher = workshop.run(openElsewhere);
     const pid = Number((await launcher.waitForLine(/^pid /)).slice(4));
     await launcher.end('SIGKILL');
@@ -251,7 +234,7 @@ describe('where the database lives and who runs it', () => {
     const place = isRoot ? join(outsideFolder, 'postgres') : join(dataFolder, 'postgres');
     home = await chooseHome({ dataFolder, outsideFolder, account });
     expect(home).toBe(place);
-    useThePrepared();
+    prepared.copyTo(home);
     const cluster = await open();
     expect((await cluster.query('SHOW data_directory')).trim()).toBe(join(place, 'data'));
   });

@@ -1,4 +1,4 @@
-import { spawn } from 'node:child_process';
+import { execFileSync, spawn } from 'node:child_process';
 import type { ChildProcess } from 'node:child_process';
 import { once } from 'node:events';
 import { chmodSync, cpSync, existsSync, mkdtempSync, readFileSync, readdirSync, rmSync } from 'node:fs';
@@ -6,7 +6,9 @@ import { tmpdir } from 'node:os';
 import { join } from 'node:path';
 import { createInterface } from 'node:readline';
 import { vi } from 'vitest';
+import { makeCluster } from '../../server/launch/cluster.mjs';
 import type { Account } from '../../server/launch/commands.mjs';
+import { databaseAccount } from '../../server/launch/debian.mjs';
 
 export interface LaunchedScript {
   child: ChildProcess;
@@ -107,4 +109,23 @@ function readFile(path: string): string {
   } catch {
     return '';
   }
+}
+
+export interface PreparedCluster {
+  /** Puts a copy at `home`, owned as the original. */
+  copyTo(home: string): void;
+  remove(): void;
+}
+
+/** A cluster made once for a test file, without waiting for the disk: making one takes longer than most tests. */
+export async function prepareCluster(): Promise<PreparedCluster> {
+  const account = databaseAccount();
+  const folder = mkdtempSync(join(tmpdir(), 'launch-prepared-'));
+  chmodSync(folder, 0o755);
+  const home = join(folder, 'postgres');
+  await makeCluster({ home, account, durable: false });
+  return {
+    copyTo: (place) => execFileSync('cp', ['-a', home, place]),
+    remove: () => rmSync(folder, { recursive: true, force: true }),
+  };
 }
