@@ -2,19 +2,11 @@ import type { CheckedClusters } from './cluster-ids.ts';
 import type { CheckedDesign } from './design.ts';
 import type { LeastSquares } from './least-squares.ts';
 
-/** Rows in the order of their clusters, and where each cluster starts (counting sort, O(n)). */
-function byCluster({ ids, size }: CheckedClusters): { order: Int32Array; starts: Int32Array } {
-  const starts = new Int32Array(size + 1);
-  for (let i = 0; i < ids.length; i++) starts[ids[i]! + 1]! += 1;
-  for (let g = 0; g < size; g++) starts[g + 1]! += starts[g]!;
-  const next = starts.slice(0, size);
-  const order = new Int32Array(ids.length);
-  for (let i = 0; i < ids.length; i++) {
-    const id = ids[i]!;
-    order[next[id]!] = i;
-    next[id]! += 1;
-  }
-  return { order, starts };
+/** Sum of a b over the rows of each cluster. */
+function sumByCluster(a: Float64Array, b: Float64Array, ids: Int32Array, size: number): Float64Array {
+  const sums = new Float64Array(size);
+  for (let i = 0; i < ids.length; i++) sums[ids[i]!]! += a[i]! * b[i]!;
+  return sums;
 }
 
 /**
@@ -34,24 +26,20 @@ export function clusterSandwich(
   weights: Float64Array | null,
   clusters: CheckedClusters,
 ): Float64Array {
-  const { n, cells, cellCount } = design;
+  const { cells, cellCount } = design;
   const { residuals, basis, inverse, centred, cellMeans, cellWeights } = fit;
   const k = fit.solution.length;
   const m = basis.length;
-  const { ids, size } = clusters;
+  const { ids, size, order, starts } = clusters;
   const scores = weights ? residuals.map((value, i) => value * weights[i]!) : residuals;
 
-  const sums = new Float64Array(size * m);
-  basis.forEach((j, position) => {
-    const column = centred[j]!;
-    for (let i = 0; i < n; i++) sums[ids[i]! * m + position]! += scores[i]! * column[i]!;
-  });
+  const sums = basis.map((j) => sumByCluster(scores, centred[j]!, ids, size));
   const influence = new Float64Array(size * m);
   const slopes = new Float64Array(m * m);
   for (let g = 0; g < size; g++) {
     for (let a = 0; a < m; a++) {
       let value = 0;
-      for (let b = 0; b < m; b++) value += inverse[a * m + b]! * sums[g * m + b]!;
+      for (let b = 0; b < m; b++) value += inverse[a * m + b]! * sums[b]![g]!;
       influence[g * m + a] = value;
     }
     for (let a = 0; a < m; a++) {
@@ -70,9 +58,10 @@ export function clusterSandwich(
   // Products of the cells' own parts, and of those with the slopes' part.
   const mixed = new Float64Array(cellCount * m);
   const own = new Float64Array(cellCount);
+  // Amounts of the cells one cluster touches, in the order of `touched`.
+  const amounts = new Float64Array(cellCount);
   const touched = new Int32Array(cellCount);
   const isTouched = new Uint8Array(cellCount);
-  const { order, starts } = byCluster(clusters);
   for (let g = 0; g < size; g++) {
     let count = 0;
     for (let at = starts[g]!; at < starts[g + 1]!; at++) {
@@ -84,14 +73,23 @@ export function clusterSandwich(
       }
       own[c]! += scores[i]!;
     }
-    for (let p = 0; p < count; p++) own[touched[p]!]! /= cellWeights[touched[p]!]!;
     for (let p = 0; p < count; p++) {
       const c = touched[p]!;
-      const amount = own[c]!;
-      for (let q = 0; q < count; q++) covariance[c * k + touched[q]!]! += amount * own[touched[q]!]!;
+      const amount = own[c]! / cellWeights[c]!;
+      amounts[p] = amount;
+      own[c] = 0;
+      isTouched[c] = 0;
+      // Each pair once, in whichever triangle it falls: both are added up below.
+      const row = c * k;
+      for (let q = 0; q <= p; q++) covariance[row + touched[q]!]! += amount * amounts[q]!;
       for (let a = 0; a < m; a++) mixed[c * m + a]! += amount * influence[g * m + a]!;
     }
-    for (let p = 0; p < count; p++) own[touched[p]!] = isTouched[touched[p]!] = 0;
+  }
+  for (let c = 0; c < cellCount; c++) {
+    for (let d = 0; d < c; d++) {
+      const sum = covariance[c * k + d]! + covariance[d * k + c]!;
+      covariance[c * k + d] = covariance[d * k + c] = sum;
+    }
   }
   // Means of the independent columns per cell, and those times the slopes' covariance.
   const means = new Float64Array(cellCount * m);
@@ -141,13 +139,12 @@ export function inverseDiagonal(design: CheckedDesign, fit: LeastSquares): Float
 }
 
 /** Per coefficient: rows with a value other than zero, and the clusters they belong to. O(n m). */
-export function support(design: CheckedDesign, { ids, size }: CheckedClusters) {
+export function support(design: CheckedDesign, { ids, size, order }: CheckedClusters) {
   const { n, cells, cellCount, columns } = design;
   const rows = new Int32Array(cellCount + columns.length);
   const clusters = new Int32Array(cellCount + columns.length);
   if (cells) {
     const last = new Int32Array(cellCount).fill(-1);
-    const { order } = byCluster({ ids, size, count: size });
     for (let at = 0; at < n; at++) {
       const i = order[at]!;
       const c = cells[i]!;
@@ -156,15 +153,19 @@ export function support(design: CheckedDesign, { ids, size }: CheckedClusters) {
       last[c] = ids[i]!;
     }
   }
-  const seen = new Int32Array(size).fill(-1);
   columns.forEach((column, j) => {
-    for (let i = 0; i < n; i++) {
-      if (column[i] === 0) continue;
-      rows[cellCount + j]! += 1;
-      const id = ids[i]!;
-      if (seen[id] !== j) clusters[cellCount + j]! += 1;
-      seen[id] = j;
+    const held = rowsHeld(column, ids, size);
+    for (let g = 0; g < size; g++) {
+      rows[cellCount + j]! += held[g]!;
+      if (held[g]! > 0) clusters[cellCount + j]! += 1;
     }
   });
   return { rows, clusters };
+}
+
+/** Rows with a value other than zero, per cluster; without a branch, since zeros come at random. */
+function rowsHeld(column: Float64Array, ids: Int32Array, size: number): Int32Array {
+  const held = new Int32Array(size);
+  for (let i = 0; i < ids.length; i++) held[ids[i]!]! += Number(column[i] !== 0);
+  return held;
 }

@@ -44,6 +44,29 @@ export interface CheckedClusters {
   size: number;
   /** Ids that occur. */
   count: number;
+  /** Rows in the order of their clusters. */
+  order: Int32Array;
+  /** Cluster g holds positions starts[g] to starts[g + 1] - 1 of `order`. */
+  starts: Int32Array;
+}
+
+/** Groups rows by their ids (counting sort, O(n)). */
+export function groupClusters(ids: Int32Array, size: number): CheckedClusters {
+  const starts = new Int32Array(size + 1);
+  for (let i = 0; i < ids.length; i++) starts[ids[i]! + 1]! += 1;
+  let count = 0;
+  for (let g = 0; g < size; g++) {
+    if (starts[g + 1]! > 0) count += 1;
+    starts[g + 1]! += starts[g]!;
+  }
+  const next = starts.slice(0, size);
+  const order = new Int32Array(ids.length);
+  for (let i = 0; i < ids.length; i++) {
+    const id = ids[i]!;
+    order[next[id]!] = i;
+    next[id]! += 1;
+  }
+  return { ids, size, count, order, starts };
 }
 
 /** @throws RangeError naming the argument: one id per row, whole numbers from 0 to 2^31 - 2 */
@@ -62,15 +85,7 @@ export function readClusters(name: string, clusters: Numbers, rows: number): Che
   // Sparse ids would ask for memory by their largest value: make them dense first.
   if (size > 4 * rows + 1000) {
     const dense = clusterIds(Array.from(clusters));
-    return { ids: dense.ids, size: dense.count, count: dense.count };
+    return groupClusters(dense.ids, dense.count);
   }
-  const ids = clusters instanceof Int32Array ? clusters : Int32Array.from(clusters);
-  const seen = new Uint8Array(size);
-  let count = 0;
-  for (let i = 0; i < rows; i++) {
-    const id = ids[i]!;
-    count += 1 - seen[id]!;
-    seen[id] = 1;
-  }
-  return { ids, size, count };
+  return groupClusters(clusters instanceof Int32Array ? clusters : Int32Array.from(clusters), size);
 }

@@ -1,9 +1,9 @@
-import { type Numbers, requireNumbers, requireOpenUnit, requirePositive } from './arguments.ts';
+import { largestSize, type Numbers, requireNumbers, requireOpenUnit, requirePositive } from './arguments.ts';
 import { clusterSandwich, inverseDiagonal, support } from './cluster-covariance.ts';
-import { pairClusters, readClusters } from './cluster-ids.ts';
+import { groupClusters, pairClusters, readClusters } from './cluster-ids.ts';
 import { type Design, readDesign } from './design.ts';
 import { type Interval, tResult, type TResult } from './intervals.ts';
-import { leastSquares } from './least-squares.ts';
+import { leastSquares, weightedDot } from './least-squares.ts';
 
 export interface ClusterRegressionOptions {
   /** Confidence level of the intervals; 0.95 unless changed. */
@@ -114,9 +114,6 @@ function settle(variance: number, oneWay: readonly number[]): { variance: number
   return { variance: replaced ? largest : variance, replaced };
 }
 
-const largestSize = (values: Float64Array) =>
-  values.reduce((most, value) => Math.max(most, Math.abs(value)), 0);
-
 /**
  * Least squares with standard errors that take whole clusters, not rows, as independent.
  *
@@ -160,7 +157,7 @@ export function clusterRegression(
       throw new RangeError(`weights must hold one value per row (${n}), got ${weights.length}`);
     weights.forEach((weight, i) => requirePositive(`weights[${i}]`, weight));
   }
-  const response = Float64Array.from(y);
+  const response = y instanceof Float64Array ? y : Float64Array.from(y);
   const fit = leastSquares(checked, response, weights);
   const { rank, residuals, solution, nullSpace } = fit;
   const k = solution.length;
@@ -186,14 +183,13 @@ export function clusterRegression(
     covariance = way(first);
     if (second) {
       const both = pairClusters(first.ids, second.ids);
-      const inner = way({ ids: both.ids, size: both.count, count: both.count });
+      const inner = way(groupClusters(both.ids, both.count));
       oneWayCovariances = [covariance, way(second)];
       covariance = covariance.map((value, i) => value + oneWayCovariances[1]![i]! - inner[i]!);
     }
   }
 
-  let squares = 0;
-  for (let i = 0; i < n; i++) squares += (weights ? weights[i]! : 1) * residuals[i]! * residuals[i]!;
+  const squares = weightedDot(residuals, residuals, weights);
   const residualVariance = n > rank ? squares / (n - rank) : null;
   const naive = inverseDiagonal(checked, fit);
   const held = support(checked, first);

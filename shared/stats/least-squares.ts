@@ -1,5 +1,7 @@
 import type { CheckedDesign } from './design.ts';
-import { inverseGram, pivotedQr, solveUpper } from './pivoted-qr.ts';
+import { largestSize } from './arguments.ts';
+import { inverseGram, pivotedQr, solveLower, solveUpper } from './pivoted-qr.ts';
+import { triangularFactor } from './tall-qr.ts';
 
 /**
  * A dense column counts as dependent when what the other columns leave of it is smaller than this part
@@ -29,36 +31,51 @@ export interface LeastSquares {
   nullSpace: number[][];
 }
 
-/** Subtracts the weighted cell means, twice, so that their rounding error goes too; returns the means. */
-function centre(values: Float64Array, cells: Int32Array, weights: Float64Array | null, totals: Float64Array) {
+/** Subtracts the weighted cell means and returns them; a second pass removes their rounding error. */
+function centre(
+  values: Float64Array,
+  cells: Int32Array,
+  weights: Float64Array | null,
+  totals: Float64Array,
+): Float64Array {
   const means = new Float64Array(totals.length);
-  const step = new Float64Array(totals.length);
-  for (let pass = 0; pass < 2; pass++) {
-    step.fill(0);
-    if (weights) for (let i = 0; i < values.length; i++) step[cells[i]!]! += weights[i]! * values[i]!;
-    else for (let i = 0; i < values.length; i++) step[cells[i]!]! += values[i]!;
-    for (let c = 0; c < step.length; c++) {
-      if (totals[c]! > 0) step[c]! /= totals[c]!;
-      means[c]! += step[c]!;
+  const sums = new Float64Array(totals.length);
+  const takeMeans = () => {
+    for (let c = 0; c < sums.length; c++) {
+      if (totals[c]! > 0) sums[c]! /= totals[c]!;
+      means[c]! += sums[c]!;
     }
-    for (let i = 0; i < values.length; i++) values[i]! -= step[cells[i]!]!;
+  };
+  if (weights) for (let i = 0; i < values.length; i++) sums[cells[i]!]! += weights[i]! * values[i]!;
+  else for (let i = 0; i < values.length; i++) sums[cells[i]!]! += values[i]!;
+  takeMeans();
+  const first = means.slice();
+  sums.fill(0);
+  for (let i = 0; i < values.length; i++) {
+    const c = cells[i]!;
+    const rest = values[i]! - first[c]!;
+    values[i] = rest;
+    sums[c]! += weights ? weights[i]! * rest : rest;
+  }
+  takeMeans();
+  // Mostly the first mean was right to the last digit and nothing is left to subtract.
+  if (largestSize(sums) > 2 * Number.EPSILON * largestSize(means)) {
+    for (let i = 0; i < values.length; i++) values[i]! -= sums[cells[i]!]!;
   }
   return means;
 }
 
-/** Euclidean length with the weights. */
-function length(values: Float64Array, weights: Float64Array | null): number {
+/** Sum of w a b. */
+export function weightedDot(a: Float64Array, b: Float64Array, weights: Float64Array | null): number {
   let sum = 0;
-  if (weights) for (let i = 0; i < values.length; i++) sum += weights[i]! * values[i]! * values[i]!;
-  else for (let i = 0; i < values.length; i++) sum += values[i]! * values[i]!;
-  return Math.sqrt(sum);
+  if (weights) for (let i = 0; i < a.length; i++) sum += weights[i]! * a[i]! * b[i]!;
+  else for (let i = 0; i < a.length; i++) sum += a[i]! * b[i]!;
+  return sum;
 }
 
-const largest = (values: Float64Array) => {
-  let most = 0;
-  for (let i = 0; i < values.length; i++) most = Math.max(most, Math.abs(values[i]!));
-  return most;
-};
+function subtractMultiple(values: Float64Array, factor: number, column: Float64Array): void {
+  for (let i = 0; i < values.length; i++) values[i]! -= factor * column[i]!;
+}
 
 /** Largest entry 1, rounding noise cleared. */
 function tidy(vector: number[], reach: number[]): number[] {
@@ -76,8 +93,8 @@ function tidy(vector: number[], reach: number[]): number[] {
  * (Weighted) least squares on cell indicators and dense columns.
  *
  * The indicators are eliminated exactly: dense columns and y are centred within cells, the few centred
- * columns are factored (pivoted QR), and the cell values follow (Frisch and Waugh 1933; Lovell 1963).
- * One step of iterative refinement (Bjorck 1996, 2.9). Time O(n m^2) for m dense columns, whatever the number of
+ * columns are factored (QR, then pivoted QR of the triangle), and the cell values follow (Frisch and
+ * Waugh 1933; Lovell 1963). One step of refinement by corrected seminormal equations (Bjorck 1987). Time O(n m^2) for m dense columns, whatever the number of
  * cells; memory O(n m).
  */
 export function leastSquares(
@@ -89,34 +106,36 @@ export function leastSquares(
   const cellWeights = new Float64Array(cellCount);
   if (cells) for (let i = 0; i < n; i++) cellWeights[cells[i]!]! += weights ? weights[i]! : 1;
 
-  const lengths = columns.map((column) => length(column, weights));
+  const lengths = columns.map((column) => Math.sqrt(weightedDot(column, column, weights)));
   const centred = columns.map((column) => (cells ? column.slice() : column));
   const cellMeans = cells ? centred.map((column) => centre(column, cells, weights, cellWeights)) : [];
   const residuals = y.slice();
   const cellValues = cells ? centre(residuals, cells, weights, cellWeights) : cellWeights;
 
-  const roots = weights?.map(Math.sqrt) ?? null;
-  const scaled = centred.map((column, j) => {
-    const scale = lengths[j]! > 0 ? 1 / lengths[j]! : 0;
-    return roots ? column.map((value, i) => value * scale * roots[i]!) : column.map((value) => value * scale);
-  });
-  const qr = pivotedQr(scaled, dependent);
+  const scales = lengths.map((own) => (own > 0 ? 1 / own : 0));
+  const m = columns.length;
+  const factor = triangularFactor(centred, scales, residuals, weights && weights.map(Math.sqrt));
+  const triangle = Array.from({ length: m }, (_, j) =>
+    Float64Array.from({ length: m }, (__, i) => factor[i * (m + 1) + j]!),
+  );
+  const qr = pivotedQr(triangle, dependent);
   const { order, rank } = qr;
   const basis = order.slice(0, rank);
 
-  const slopes = new Float64Array(columns.length);
-  const right = new Float64Array(n);
-  for (let pass = 0; rank > 0 && pass < 2; pass++) {
-    right.set(residuals);
-    if (roots) for (let i = 0; i < n; i++) right[i]! *= roots[i]!;
-    qr.applyTransposed(right);
-    const step = solveUpper(qr, right);
+  const slopes = new Float64Array(m);
+  const follow = (step: Float64Array) => {
     basis.forEach((j, position) => {
-      const change = step[position]! / lengths[j]!;
+      const change = step[position]! * scales[j]!;
       slopes[j]! += change;
-      const column = centred[j]!;
-      for (let i = 0; i < n; i++) residuals[i]! -= change * column[i]!;
+      subtractMultiple(residuals, change, centred[j]!);
     });
+  };
+  if (rank > 0) {
+    const right = Float64Array.from({ length: m }, (_, i) => factor[i * (m + 1) + m]!);
+    qr.applyTransposed(right);
+    follow(solveUpper(qr, right));
+    const left = basis.map((j) => weightedDot(centred[j]!, residuals, weights) * scales[j]!);
+    follow(solveUpper(qr, solveLower(qr, left)));
   }
 
   const solution = new Float64Array(cellCount + columns.length);
@@ -132,7 +151,10 @@ export function leastSquares(
     for (let b = 0; b < rank; b++) inverse[a * rank + b]! /= lengths[basis[a]!]! * lengths[basis[b]!]!;
   }
 
-  const reach = [...new Array<number>(cellCount).fill(1), ...columns.map((column) => largest(column) || 1)];
+  const reach = [
+    ...new Array<number>(cellCount).fill(1),
+    ...columns.map((column) => largestSize(column) || 1),
+  ];
   const nullSpace: number[][] = [];
   for (let c = 0; c < cellCount; c++) {
     if (cellWeights[c] === 0) nullSpace.push(Array.from(solution, (_, j) => (j === c ? 1 : 0)));
@@ -141,7 +163,7 @@ export function leastSquares(
     const own = order[position]!;
     const along = solveUpper(
       qr,
-      Array.from({ length: rank }, (_, row) => qr.r[row * columns.length + position]!),
+      Array.from({ length: rank }, (_, row) => qr.r[row * m + position]!),
     );
     const vector = new Array<number>(solution.length).fill(0);
     const put = (j: number, amount: number) => {

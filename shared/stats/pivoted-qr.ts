@@ -1,5 +1,5 @@
 /**
- * QR factorisation with column pivoting by Householder reflections, for tall matrices of few columns.
+ * QR factorisation with column pivoting by Householder reflections, for small matrices.
  *
  * Source: Businger and Golub (1965), Numer. Math. 7, 269-276; Golub and Van Loan, Matrix Computations, 5.4.
  * Time O(n m^2), memory O(m^2) beside the columns, which are overwritten.
@@ -87,6 +87,18 @@ export function pivotedQr(columns: Float64Array[], tolerance: number): PivotedQr
       for (let k = 0; k < rank; k++) reflect(work[k]!, k, scales[k]!, vector);
     },
   };
+}
+
+/** Solves R' x = b for the leading `rank` rows and columns; b is not changed. */
+export function solveLower({ r, rank, order }: PivotedQr, b: ArrayLike<number>): Float64Array {
+  const m = order.length;
+  const x = new Float64Array(rank);
+  for (let i = 0; i < rank; i++) {
+    let sum = b[i]!;
+    for (let j = 0; j < i; j++) sum -= r[j * m + i]! * x[j]!;
+    x[i] = sum / r[i * m + i]!;
+  }
+  return x;
 }
 
 /** Solves R x = b for the leading `rank` rows and columns; b is not changed. */

@@ -191,9 +191,9 @@ offsets <- function(n, receivers) {
 }
 for (i in 1:260) {
   kind <- c("mean", "cells", "dense", "deficient")[i %% 4 + 1]
-  n <- c(12, 20, 35, 60, 120)[i %% 5 + 1]
+  n <- c(24, 30, 40, 60, 120)[i %% 5 + 1]
   if (i %in% c(101, 202)) n <- 900
-  clusters <- max(3, round(n / c(2, 4, 6)[i %% 3 + 1]))
+  clusters <- max(5, round(n / c(2, 4, 6)[i %% 3 + 1]))
   level <- c(0.95, 0.9, 0.99)[i %% 3 + 1]
   repeat {
     cluster <- sample.int(clusters, n, TRUE) - 1L
@@ -216,7 +216,7 @@ for (i in 1:260) {
     }
     if (cell_count == 0) break
     spread <- table(factor(cells, levels = seq_len(cell_count) - 1), cluster) > 0
-    if (all(rowSums(spread) >= 3)) break
+    if (all(rowSums(spread) >= 2)) break
   }
   effect <- rnorm(clusters)[cluster + 1]
   y <- round(as.numeric(x %*% rnorm(ncol(x))) + effect + rnorm(n, 0, 2), if (i %% 2) 3 else 0)
