@@ -152,7 +152,7 @@ describe('junk in an address', () => {
     ['rules', '15,30,0.3', { rules: null }, /rules=15,30,0\.3.*own rules/],
     ['rules', '7,30,0.3,20', { rules: null }, /rules=7/],
     ['margin', '99', { marginDb: null }, /0\.1 to 20/],
-    ['zeros', 'split', { zeros: 'pratt' }, /pratt or drop/],
+    ['zeros', 'split', { zeros: 'drop' }, /pratt or drop/],
     ['basis', 'noon', { hourBasis: 'utc' }, /utc, sunset or sunrise/],
     ['a', 'north', { antennaA: null }, /a=north.*Choose an antenna/],
   ])('falls back and says so for %s=%s', (key, text, expected, sentence) => {

@@ -30,7 +30,7 @@ export const openQuestion: Readonly<QuestionDraft> = Object.freeze({
   kinds: [],
   rules: null,
   marginDb: null,
-  zeros: 'pratt',
+  zeros: 'drop',
   hourBasis: 'utc',
 });
 
@@ -78,7 +78,7 @@ export function encodeQuestion(question: QuestionDraft): Partial<Record<Question
         ? ''
         : [rules.blockMinutes, rules.windowSeconds, rules.freqToleranceKhz, rules.guardSeconds].join(','),
     margin: question.marginDb === null ? '' : String(question.marginDb),
-    zeros: question.zeros === 'pratt' ? '' : question.zeros,
+    zeros: question.zeros === 'drop' ? '' : question.zeros,
     basis: question.hourBasis === 'utc' ? '' : question.hourBasis,
   };
   return Object.fromEntries(questionKeys.filter((key) => parts[key] !== '').map((key) => [key, parts[key]]));
@@ -195,9 +195,9 @@ export function decodeQuestion(query: AddressQuery, otherKeys: readonly string[]
     zeros: read<ComparisonQuestion['zeros']>(
       'zeros',
       (text) => within(shape.zeros.unwrap(), text),
-      'pratt',
+      'drop',
       'give pratt or drop',
-      "Zeros are kept by Pratt's rule.",
+      "Zeros are dropped before ranking.",
     ),
     hourBasis: read<ComparisonQuestion['hourBasis']>(
       'basis',

@@ -39,7 +39,8 @@ export const comparisonQuestion = z
     /** null: the station's standing rules. */
     rules: pairingRules.nullable().default(null),
     marginDb: z.number().min(0.1).max(20).nullable().default(null),
-    zeros: z.enum(['pratt', 'drop']).default('pratt'),
+    /** Differences of exactly zero in the rank view: dropped before ranking (Wilcoxon), or kept (Pratt). */
+    zeros: z.enum(['drop', 'pratt']).default('drop'),
     /** How the band-by-hour map counts its hours. */
     hourBasis: z.enum(['utc', 'sunset', 'sunrise']).default('utc'),
   })

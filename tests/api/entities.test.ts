@@ -276,7 +276,8 @@ const samples: Sample[] = [
     night: '2026-01-10',
     unitCount: 412,
     heardOnlyCount: 31,
-    data: hash,
+    units: hash,
+    heardOnly: hash,
     madeAt: at(1),
   }),
   sample(rows.UnitNight, {

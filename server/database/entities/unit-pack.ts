@@ -12,7 +12,7 @@ export class UnitPack {
   @ForeignKey(() => Station, { name: 'unit_pack_station_id_fkey', onDelete: 'CASCADE' })
   stationId!: number;
 
-  /** Hash of the rules that the units were made under. */
+  /** The rules that the units were made under, as readable text (shared/pairing/rules.ts). */
   @PrimaryColumn({ name: 'rules_key', type: 'text' })
   rulesKey!: string;
 
@@ -33,7 +33,10 @@ export class UnitPack {
   heardOnlyCount!: number;
 
   @Column({ type: 'bytea' })
-  data!: Buffer;
+  units!: Buffer;
+
+  @Column({ name: 'heard_only', type: 'bytea' })
+  heardOnly!: Buffer;
 
   @Column({ name: 'made_at', type: 'timestamptz', default: () => 'now()' })
   madeAt!: Date;

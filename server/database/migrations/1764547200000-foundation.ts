@@ -453,12 +453,14 @@ CREATE TABLE unit_pack (
   night date NOT NULL,
   unit_count integer NOT NULL,
   heard_only_count integer NOT NULL,
-  data bytea NOT NULL,
+  units bytea NOT NULL,
+  heard_only bytea NOT NULL,
   made_at timestamptz NOT NULL DEFAULT now(),
   PRIMARY KEY (station_id, rules_key, antenna_a, antenna_b, night),
   CHECK (antenna_a < antenna_b)
 );
-ALTER TABLE unit_pack ALTER COLUMN data SET STORAGE EXTERNAL;
+ALTER TABLE unit_pack ALTER COLUMN units SET STORAGE EXTERNAL;
+ALTER TABLE unit_pack ALTER COLUMN heard_only SET STORAGE EXTERNAL;
 
 -- Which nights have been made under which rules, and what was left out of them and why (packed tallies).
 CREATE TABLE unit_night (
