@@ -121,7 +121,7 @@ describe('the second line of the question', () => {
       'Kinds of unit: simultaneous and alternating',
       'Rules: blocks of 15\u2009min, window 30\u2009s, tolerance 0.3\u2009kHz, guard 20\u2009s, the rules of the station',
       'Margin: 1\u2009dB',
-      "Zeros: kept while ranking (Pratt's rule)",
+      'Zeros: dropped before ranking',
     ]);
   });
 

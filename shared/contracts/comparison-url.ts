@@ -197,7 +197,7 @@ export function decodeQuestion(query: AddressQuery, otherKeys: readonly string[]
       (text) => within(shape.zeros.unwrap(), text),
       'drop',
       'give pratt or drop',
-      "Zeros are dropped before ranking.",
+      'Zeros are dropped before ranking.',
     ),
     hourBasis: read<ComparisonQuestion['hourBasis']>(
       'basis',
