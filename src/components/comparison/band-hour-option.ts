@@ -111,18 +111,7 @@ export function bandHourPicture(context: PictureContext): Picture {
       animation: false,
       grid: [{ ...box, containLabel: false }, key.grid],
       xAxis: [compact ? { ...bandAxis, position: 'top' } : { ...hourAxis, position: 'top' }, key.xAxis],
-      yAxis: [
-        compact
-          ? {
-              ...hourAxis,
-              inverse: true,
-              nameLocation: 'start',
-              nameGap: 20,
-              nameTextStyle: nameStyle(tokens),
-            }
-          : { ...bandAxis, inverse: true },
-        key.yAxis,
-      ],
+      yAxis: [compact ? { ...hourAxis, inverse: true } : { ...bandAxis, inverse: true }, key.yAxis],
       series: [map, hourTitle, ...key.series],
     },
   };
