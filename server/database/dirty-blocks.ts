@@ -37,3 +37,18 @@ export async function markDirty(
 export function markAllDirty(manager: EntityManager, stationId: number): Promise<number> {
   return markDirty(manager, stationId, new Date(0), null);
 }
+
+/** As `markDirty`, for hours that the caller knows: each date is the start of an hour of UTC. */
+export async function markHoursDirty(
+  manager: EntityManager,
+  stationId: number,
+  hours: readonly Date[],
+): Promise<void> {
+  await manager.query(
+    // Sorted, as above: two writers that mark the same hours wait for each other in one order.
+    `INSERT INTO dirty_block (station_id, starts_at)
+     SELECT $1, hour FROM unnest($2::timestamptz[]) AS hour ORDER BY hour
+     ON CONFLICT (station_id, starts_at) DO UPDATE SET marked_at = now()`,
+    [stationId, hours],
+  );
+}

@@ -1,0 +1,208 @@
+import type pg from 'pg';
+import type { DataSource, EntityManager } from 'typeorm';
+import { markHoursDirty } from '../../server/database/dirty-blocks.ts';
+import { inTransaction, isUniqueViolation } from '../../server/database/transaction.ts';
+import { publish } from '../../server/platform/notify.ts';
+import { createCallDictionary, type CallDictionary } from './call-dictionary.ts';
+import { distinctSpots, feedMinuteToleranceMs, withoutReplays } from './distinct-spots.ts';
+import { copyToStaging } from './spot-copy.ts';
+import type { SpotRecord } from './spot-record.ts';
+
+export interface WriteRequest {
+  stationId: number;
+  /** 0 for what was heard live. */
+  importId: number;
+  spots: readonly SpotRecord[];
+  /**
+   * Written in the same transaction, so that a count and the spots it counts are both there or both not.
+   * May run more than once: the transaction starts anew when it loses to another.
+   */
+  alongside?: (manager: EntityManager, outcome: WriteOutcome) => Promise<void>;
+}
+
+export interface WriteOutcome {
+  /** Rows that were not there before. */
+  stored: number;
+  /** Rows equal to one of the same batch or to one stored earlier: `stored + doubled` is the batch. */
+  doubled: number;
+}
+
+/** What one process remembers of a database. */
+interface Memory {
+  calls: CallDictionary;
+  /** Months whose partition is there, counted from January of year 0. */
+  months: Set<number>;
+}
+
+const memories = new WeakMap<DataSource, Memory>();
+
+function memoryOf(dataSource: DataSource): Memory {
+  let memory = memories.get(dataSource);
+  if (memory === undefined) {
+    memory = { calls: createCallDictionary(dataSource), months: new Set() };
+    memories.set(dataSource, memory);
+  }
+  return memory;
+}
+
+/**
+ * Stores a batch of spots in one transaction, each at most once, marks the hours whose units they touch
+ * and tells the browsers. Everything or nothing: after an error nothing of the batch is stored and the
+ * same batch can be written again.
+ *
+ * Two spots equal in receiver, second, call and frequency are one. Live spots (import 0) are stamped on
+ * arrival, and a feed that is connected to again sends its latest lines again, at another second. So a
+ * live spot is also a double of a live one equal in receiver, call, frequency and **feed minute**: the
+ * same line in the same minute is the same reception. The cost: a second reception of a station on the
+ * same 100 Hz within one minute counts once. Skimmers report a station that keeps its frequency again
+ * after several minutes only, and pairing needs one spot a burst.
+ *
+ * A batch of 20,000 to 50,000 rows is fastest. Throws a RangeError for a number that does not fit its
+ * column, and what the database says.
+ */
+export async function writeSpots(dataSource: DataSource, request: WriteRequest): Promise<WriteOutcome> {
+  const memory = memoryOf(dataSource);
+  try {
+    const { spots } = request;
+    const callIds = await memory.calls.resolve(spots.map((spot) => spot.call));
+    await ensureMonths(dataSource, memory.months, spots);
+    const distinct = distinctSpots(spots, callIds);
+    const rows = request.importId === 0 ? withoutReplays(spots, callIds, distinct) : distinct;
+    const store = (guard: Guard) =>
+      inTransaction(dataSource, (manager) => storeRows(manager, request, callIds, rows, guard));
+    try {
+      return await store('');
+    } catch (error) {
+      // Another writer stored one of these spots between our look and our insert. A plain insert is twice
+      // as fast as one with ON CONFLICT, and this happens to hardly any batch.
+      if (!isUniqueViolation(error)) throw error;
+      return await store('ON CONFLICT DO NOTHING');
+    }
+  } catch (error) {
+    // Maybe the database went away, and it might come back from a backup with other ids.
+    memory.calls.forget();
+    memory.months.clear();
+    throw error;
+  }
+}
+
+type Guard = '' | 'ON CONFLICT DO NOTHING';
+
+async function storeRows(
+  manager: EntityManager,
+  request: WriteRequest,
+  callIds: Int32Array,
+  rows: Int32Array,
+  guard: Guard,
+): Promise<WriteOutcome> {
+  const { stationId, importId, spots, alongside } = request;
+  let stored = 0;
+  if (rows.length > 0) {
+    if (importId === 0) await takeTurn(manager, stationId);
+    const client = (await manager.queryRunner!.connect()) as pg.PoolClient;
+    await copyToStaging(client, spots, callIds, rows);
+    const inserted = await client.query(insertSpots(importId === 0, guard), [
+      stationId,
+      importId,
+      new Date(Math.floor(spots[rows[0]!]!.heardAtMs / 1000) * 1000),
+      new Date(spots[rows.at(-1)!]!.heardAtMs),
+    ]);
+    stored = inserted.rowCount ?? 0;
+  }
+  const outcome = { stored, doubled: spots.length - stored };
+  if (stored > 0) {
+    await markHoursDirty(manager, stationId, await touchedHours(manager, stationId, spots, rows));
+    await publish(manager, stationId, { type: 'spots', stored });
+  }
+  await alongside?.(manager, outcome);
+  return outcome;
+}
+
+/**
+ * One live writer of a station at a time, until its commit. The rule about feed minutes has no index that
+ * could hold it: two workers (two feeds that carry the same receiver, or one that is thought dead and is
+ * not) would each miss what the other is about to store.
+ */
+async function takeTurn(manager: EntityManager, stationId: number): Promise<void> {
+  await manager.query(`SELECT pg_advisory_xact_lock(hashtext('whichwire live spots'), $1)`, [stationId]);
+}
+
+/** $1 station, $2 import, $3 and $4 the first and last second of the batch: they keep other months out. */
+function insertSpots(live: boolean, guard: Guard): string {
+  return `
+INSERT INTO spot (heard_at, station_id, receiver_id, call_id, freq_100hz, import_id, heard_ms, band_m, snr_db,
+  speed_wpm, mode, uncertainty_s, feed_minute)
+SELECT heard_at, $1, receiver_id, call_id, freq_100hz, $2, heard_ms, band_m, snr_db,
+  speed_wpm, mode, uncertainty_s, feed_minute
+FROM spot_staging staged
+WHERE NOT EXISTS (
+  SELECT FROM spot there
+  WHERE there.station_id = $1 AND there.heard_at BETWEEN $3 AND $4
+    AND there.heard_at = staged.heard_at AND there.receiver_id = staged.receiver_id
+    AND there.call_id = staged.call_id AND there.freq_100hz = staged.freq_100hz)
+${live ? notReplayed : ''}
+ORDER BY heard_at, receiver_id, call_id, freq_100hz
+${guard}`;
+}
+
+/**
+ * A live spot lies within the tolerance of its feed minute's start, or on it: two of the same minute are
+ * at most twice that apart, and two of the same minute of another day never are.
+ */
+const reach = `interval '${(2 * feedMinuteToleranceMs) / 1000} seconds'`;
+const notReplayed = `
+  AND NOT EXISTS (
+    SELECT FROM spot live
+    WHERE live.station_id = $1 AND live.import_id = 0
+      AND live.heard_at BETWEEN $3::timestamptz - ${reach} AND $4::timestamptz + ${reach}
+      AND live.heard_at BETWEEN staged.heard_at - ${reach} AND staged.heard_at + ${reach}
+      AND live.receiver_id = staged.receiver_id AND live.call_id = staged.call_id
+      AND live.freq_100hz = staged.freq_100hz AND live.feed_minute = staged.feed_minute)`;
+
+const hourMs = 3_600_000;
+
+/**
+ * Hours whose units the batch may change. A spot near the end of an hour can be matched with one of the
+ * next, and can take a match away from a pair further on: that reaches one and a half windows.
+ */
+async function touchedHours(
+  manager: EntityManager,
+  stationId: number,
+  spots: readonly SpotRecord[],
+  rows: Int32Array,
+): Promise<Date[]> {
+  const stations: { window_seconds: number }[] = await manager.query(
+    'SELECT window_seconds FROM station WHERE id = $1',
+    [stationId],
+  );
+  const reachMs = (stations[0]?.window_seconds ?? 0) * 1500;
+  const hours = new Set<number>();
+  for (const row of rows) {
+    const { heardAtMs } = spots[row]!;
+    hours.add(Math.floor((heardAtMs - reachMs) / hourMs));
+    hours.add(Math.floor((heardAtMs + reachMs) / hourMs));
+  }
+  return [...hours].map((hour) => new Date(hour * hourMs));
+}
+
+/** Makes the partitions of the batch's own months: a single wrong year must not make those between too. */
+async function ensureMonths(
+  dataSource: DataSource,
+  months: Set<number>,
+  spots: readonly SpotRecord[],
+): Promise<void> {
+  const missing = new Map<number, Date>();
+  let lastHour = Number.NaN;
+  for (const { heardAtMs } of spots) {
+    const hour = Math.floor(heardAtMs / hourMs);
+    if (hour === lastHour) continue;
+    lastHour = hour;
+    const heardAt = new Date(heardAtMs);
+    const month = heardAt.getUTCFullYear() * 12 + heardAt.getUTCMonth();
+    if (!months.has(month)) missing.set(month, heardAt);
+  }
+  for (const [month, heardAt] of missing) {
+    await dataSource.query('SELECT ensure_spot_partitions($1, $1)', [heardAt]);
+    months.add(month);
+  }
+}
