@@ -17,6 +17,29 @@ import type { ApiProblem } from '../api/problem.ts';
 import type { LoadState } from '../composables/useLoad.ts';
 import { useTheme } from '../composables/useTheme.ts';
 
+const notedAs = 'whichwire.session';
+
+/**
+ * Whether this browser had a session, and nothing more: it saves a stranger's first page a request that is bound to
+ * be refused. Where storage is forbidden the server is always asked.
+ */
+function mayHaveSession(): boolean {
+  try {
+    return localStorage.getItem(notedAs) !== null;
+  } catch {
+    return true;
+  }
+}
+
+function noteSession(isThere: boolean): void {
+  try {
+    if (isThere) localStorage.setItem(notedAs, 'yes');
+    else localStorage.removeItem(notedAs);
+  } catch {
+    // See `mayHaveSession`.
+  }
+}
+
 /**
  * Who sits here. `state` tells whether that is known yet; once it is `ready`, `profile` is null when nobody is
  * signed in. The access token is not in this store (see api/access.ts).
@@ -35,11 +58,13 @@ export const useSessionStore = defineStore('session', () => {
 
   onSignedIn((signedIn) => take(signedIn.profile));
   onSignedOut(() => {
+    noteSession(false);
     profile.value = null;
     endedUnasked.value = true;
   });
 
   function take(next: Profile): void {
+    noteSession(true);
     profile.value = next;
     problem.value = null;
     endedUnasked.value = false;
@@ -55,12 +80,17 @@ export const useSessionStore = defineStore('session', () => {
   }
 
   async function askAgain(): Promise<void> {
+    if (!mayHaveSession()) {
+      state.value = 'ready';
+      return;
+    }
     state.value = 'loading';
     try {
       await refreshAccess();
     } catch (error) {
       const failed = asProblem(error);
       if (failed.status === 401 || failed.status === 403) {
+        noteSession(false);
         state.value = 'ready';
       } else {
         problem.value = failed;
@@ -91,6 +121,7 @@ export const useSessionStore = defineStore('session', () => {
   async function leave(): Promise<void> {
     await request(signOut);
     dropAccess();
+    noteSession(false);
     profile.value = null;
     endedUnasked.value = false;
   }
