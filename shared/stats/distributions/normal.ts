@@ -27,7 +27,7 @@ const middle = {
 };
 const far = {
   top: [
-    0.02307344176494017303, 0.21589853405795699, 0.1274011611602473639, 0.022235277649823,
+    0.02307344176494017303, 0.21589853405795699, 0.1274011611602473639, 0.022235277870649807,
     0.001421619193227893466, 2.9112874951168792e-5,
   ],
   bottom: [
@@ -87,6 +87,7 @@ export function normalCdf(z: number): number {
  */
 export function normalUpperQuantile(q: number): number {
   requireOpenUnit('q', q);
+  if (q === 0.5) return 0;
   if (q > 0.5) return -normalUpperQuantile(1 - q);
   const s = Math.sqrt(-2 * Math.log(q));
   let z =
@@ -104,5 +105,5 @@ export function normalUpperQuantile(q: number): number {
 /** z with P(Z <= z) = p. */
 export function normalQuantile(p: number): number {
   requireOpenUnit('p', p);
-  return p <= 0.5 ? -normalUpperQuantile(p) || 0 : normalUpperQuantile(1 - p);
+  return p <= 0.5 ? 0 - normalUpperQuantile(p) : normalUpperQuantile(1 - p);
 }
