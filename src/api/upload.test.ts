@@ -108,17 +108,15 @@ describe('an upload', () => {
 
   it('fails with the sentence of the server', async () => {
     answer = (_, response) =>
-      response
-        .writeHead(413, { 'content-type': 'application/problem+json' })
-        .end(
-          JSON.stringify({
-            type: 'x',
-            title: 'Too large',
-            status: 413,
-            detail: 'At most 500 MB.',
-            code: 'big',
-          }),
-        );
+      response.writeHead(413, { 'content-type': 'application/problem+json' }).end(
+        JSON.stringify({
+          type: 'x',
+          title: 'Too large',
+          status: 413,
+          detail: 'At most 500 MB.',
+          code: 'big',
+        }),
+      );
     const error = await upload(uploadImport, input).catch((reason: unknown) => asProblem(reason));
     expect(error).toMatchObject({ status: 413, message: 'At most 500 MB.' });
   });

@@ -2,7 +2,7 @@ import { onScopeDispose, ref, shallowRef } from 'vue';
 import { defineStore } from 'pinia';
 import { compare, exportUnits } from '../../shared/contracts/comparison.ts';
 import type { ComparisonAnswer, ComparisonQuestion } from '../../shared/contracts/comparison.ts';
-import { readJob } from '../../shared/contracts/job.ts';
+import { cancelJob, readJob } from '../../shared/contracts/job.ts';
 import type { Job } from '../../shared/contracts/job.ts';
 import { download, request } from '../api/client.ts';
 import { ApiProblem, asProblem, isAbort } from '../api/problem.ts';
@@ -97,6 +97,18 @@ export const useComparisonStore = defineStore('comparison', () => {
     }
   }
 
+  /** Stops the job that makes the units. Never rejects: a failure becomes the state. */
+  async function cancel(): Promise<void> {
+    const id = jobId.value;
+    if (asked === null || id === null) return;
+    try {
+      await request(cancelJob, { params: { stationId: asked.stationId, jobId: id } });
+      await follow();
+    } catch (error) {
+      if (jobId.value === id) fail(asProblem(error));
+    }
+  }
+
   function fail(why: ApiProblem): void {
     problem.value = why;
     state.value = 'failed';
@@ -125,5 +137,5 @@ export const useComparisonStore = defineStore('comparison', () => {
   }
 
   onScopeDispose(leave);
-  return { state, answer, problem, job, jobId, ask, refresh, follow, leave, unitsCsv };
+  return { state, answer, problem, job, jobId, ask, refresh, follow, cancel, leave, unitsCsv };
 });
