@@ -3,12 +3,14 @@ import type { Route } from '../platform/route.ts';
 import { auditRoutes } from './audit/audit.routes.ts';
 import { authRoutes } from './auth/auth.routes.ts';
 import { profileRoutes } from './auth/profile.routes.ts';
+import { comparisonRoutes } from './comparisons/comparison.routes.ts';
 import { eventRoutes } from './events/event.routes.ts';
 import { healthRoutes } from './health/health.routes.ts';
 import { jobRoutes } from './jobs/job.routes.ts';
 import { memberRoutes } from './members/member.routes.ts';
 import { stationRoutes } from './station/station.routes.ts';
 import { tokenRoutes } from './tokens/token.routes.ts';
+import { trialRoutes } from './trials/trial.routes.ts';
 
 /** Every route of the API. What is not in this list does not exist; tests walk it. */
 export function apiRoutes(deps: Deps): Route[] {
@@ -20,6 +22,8 @@ export function apiRoutes(deps: Deps): Route[] {
     ...memberRoutes(deps),
     ...tokenRoutes(deps),
     ...auditRoutes(deps),
+    ...comparisonRoutes(deps),
+    ...trialRoutes(deps),
     ...jobRoutes(deps),
     ...eventRoutes(deps),
   ];
