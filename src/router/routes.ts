@@ -32,6 +32,12 @@ export interface StationPage {
  */
 export const stationPages: readonly StationPage[] = [
   {
+    name: 'compare',
+    word: 'Compare',
+    permission: 'comparison:read',
+    view: () => import('../views/CompareView.vue'),
+  },
+  {
     name: 'settings',
     word: 'Settings',
     permission: 'station:read',
@@ -87,6 +93,13 @@ export const routes: RouteRecordRaw[] = [
         component: view,
         meta: { title: word, permission },
       })),
+      // Reached from Compare; no place of its own in the rail.
+      {
+        path: 'trials',
+        name: 'trials',
+        component: () => import('../views/TrialsView.vue'),
+        meta: { title: 'Trials', permission: 'trial:read' },
+      },
     ],
   },
   {
