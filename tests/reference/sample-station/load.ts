@@ -10,6 +10,8 @@ export interface SampleStation {
   dwells: DwellColumns;
   antennaIds: Map<string, number>;
   receiverIds: Map<string, number>;
+  /** Call signs in the order of their ids, the first of which is 1. */
+  calls: string[];
 }
 
 function readRows(name: string): Record<string, string>[] {
@@ -31,6 +33,7 @@ export function loadSampleStation(set: 'swap' | 'alternate'): SampleStation {
   return {
     antennaIds,
     receiverIds,
+    calls: [...callIds.keys()],
     dwells: {
       receiver: Int32Array.from(dwellRows, (row) => receiverIds.get(row.rx!)!),
       antenna: Int32Array.from(dwellRows, (row) => antennaIds.get(row.antenna!)!),
