@@ -5,7 +5,7 @@ import { anybody, route } from '../../platform/route.ts';
 import type { Route } from '../../platform/route.ts';
 import { createAuthService } from './auth.service.ts';
 import type { Entry } from './auth.service.ts';
-import { demoAccounts } from './demo-accounts.ts';
+import { demoAccounts } from '../../platform/demo-accounts.ts';
 import { clearRefreshCookie, readRefreshCookie, setRefreshCookie } from './refresh-cookie.ts';
 
 export function authRoutes(deps: Deps): Route[] {
