@@ -3,9 +3,10 @@ import type { DataSource, EntityManager } from 'typeorm';
 import { markHoursDirty } from '../../server/database/dirty-blocks.ts';
 import { inTransaction, isUniqueViolation } from '../../server/database/transaction.ts';
 import { publish } from '../../server/platform/notify.ts';
+import { ensureBearings } from '../bearings/bearing-store.ts';
 import { createCallDictionary, type CallDictionary } from './call-dictionary.ts';
 import { distinctSpots, feedMinuteToleranceMs, withoutReplays } from './distinct-spots.ts';
-import { copyToStaging } from './spot-copy.ts';
+import { copySpots, spotColumns, type CopyRows } from './spot-copy.ts';
 import type { SpotRecord } from './spot-record.ts';
 
 export interface WriteRequest {
@@ -32,6 +33,8 @@ interface Memory {
   calls: CallDictionary;
   /** Months whose partition is there, counted from January of year 0. */
   months: Set<number>;
+  /** Calls whose bearing is there, by station. */
+  placed: Map<number, Set<number>>;
 }
 
 const memories = new WeakMap<DataSource, Memory>();
@@ -39,7 +42,7 @@ const memories = new WeakMap<DataSource, Memory>();
 function memoryOf(dataSource: DataSource): Memory {
   let memory = memories.get(dataSource);
   if (memory === undefined) {
-    memory = { calls: createCallDictionary(dataSource), months: new Set() };
+    memory = { calls: createCallDictionary(dataSource), months: new Set(), placed: new Map() };
     memories.set(dataSource, memory);
   }
   return memory;
@@ -68,54 +71,76 @@ export async function writeSpots(dataSource: DataSource, request: WriteRequest):
     await ensureMonths(dataSource, memory.months, spots);
     const distinct = distinctSpots(spots, callIds);
     const rows = request.importId === 0 ? withoutReplays(spots, callIds, distinct) : distinct;
-    const store = (guard: Guard) =>
-      inTransaction(dataSource, (manager) => storeRows(manager, request, callIds, rows, guard));
-    try {
-      return await store('');
-    } catch (error) {
-      // Another writer stored one of these spots between our look and our insert. A plain insert is twice
-      // as fast as one with ON CONFLICT, and this happens to hardly any batch.
-      if (!isUniqueViolation(error)) throw error;
-      return await store('ON CONFLICT DO NOTHING');
-    }
+    const placed = memory.placed.get(request.stationId) ?? new Set<number>();
+    const unplaced = [...new Set(callIds)].filter((id) => !placed.has(id));
+    const batch = { ...request, callIds, rows, unplaced };
+    const outcome = await storeGuarded(dataSource, batch);
+    for (const id of unplaced) placed.add(id);
+    memory.placed.set(request.stationId, placed);
+    return outcome;
   } catch (error) {
     // Maybe the database went away, and it might come back from a backup with other ids.
     memory.calls.forget();
     memory.months.clear();
+    memory.placed.clear();
     throw error;
   }
 }
 
+/** A request made ready: `rows` are in the order of the table's key. */
+interface Batch extends WriteRequest, CopyRows {
+  /** Calls that may have no bearing yet. */
+  unplaced: number[];
+}
+
 type Guard = '' | 'ON CONFLICT DO NOTHING';
 
-async function storeRows(
-  manager: EntityManager,
-  request: WriteRequest,
-  callIds: Int32Array,
-  rows: Int32Array,
-  guard: Guard,
-): Promise<WriteOutcome> {
-  const { stationId, importId, spots, alongside } = request;
-  let stored = 0;
-  if (rows.length > 0) {
-    if (importId === 0) await takeTurn(manager, stationId);
-    const client = (await manager.queryRunner!.connect()) as pg.PoolClient;
-    await copyToStaging(client, spots, callIds, rows);
-    const inserted = await client.query(insertSpots(importId === 0, guard), [
-      stationId,
-      importId,
-      new Date(Math.floor(spots[rows[0]!]!.heardAtMs / 1000) * 1000),
-      new Date(spots[rows.at(-1)!]!.heardAtMs),
-    ]);
-    stored = inserted.rowCount ?? 0;
+async function storeGuarded(dataSource: DataSource, batch: Batch): Promise<WriteOutcome> {
+  try {
+    return await inTransaction(dataSource, (manager) => storeRows(manager, batch, ''));
+  } catch (error) {
+    // Another writer stored one of these spots between our look and our insert. A plain insert is twice as
+    // fast as one with ON CONFLICT, and this happens to hardly any batch.
+    if (!isUniqueViolation(error)) throw error;
+    return inTransaction(dataSource, (manager) => storeRows(manager, batch, 'ON CONFLICT DO NOTHING'));
   }
+}
+
+async function storeRows(manager: EntityManager, batch: Batch, guard: Guard): Promise<WriteOutcome> {
+  const { stationId, spots, rows, unplaced, alongside } = batch;
+  const stored = rows.length === 0 ? 0 : await insertRows(manager, batch, guard);
   const outcome = { stored, doubled: spots.length - stored };
+  if (unplaced.length > 0) await ensureBearings(manager, stationId, unplaced);
   if (stored > 0) {
     await markHoursDirty(manager, stationId, await touchedHours(manager, stationId, spots, rows));
     await publish(manager, stationId, { type: 'spots', stored });
   }
   await alongside?.(manager, outcome);
   return outcome;
+}
+
+/** Returns how many rows were not there before. */
+async function insertRows(manager: EntityManager, batch: Batch, guard: Guard): Promise<number> {
+  const { stationId, importId, spots, rows } = batch;
+  const live = importId === 0;
+  if (live) await takeTurn(manager, stationId);
+  const client = (await manager.queryRunner!.connect()) as pg.PoolClient;
+  const firstAt = new Date(Math.floor(spots[rows[0]!]!.heardAtMs / 1000) * 1000);
+  const lastAt = new Date(spots[rows.at(-1)!]!.heardAtMs);
+  if (!live && guard === '') {
+    const there = await client.query(
+      'SELECT 1 FROM spot WHERE station_id = $1 AND heard_at BETWEEN $2 AND $3 LIMIT 1',
+      [stationId, firstAt, lastAt],
+    );
+    if (there.rowCount === 0) {
+      // Nothing that could be doubled: a season's first import takes this way, at half the price.
+      await copySpots(client, 'spot', batch);
+      return rows.length;
+    }
+  }
+  await copySpots(client, 'spot_staging', batch);
+  const inserted = await client.query(insertSpots(live, guard), [stationId, firstAt, lastAt]);
+  return inserted.rowCount ?? 0;
 }
 
 /**
@@ -127,17 +152,14 @@ async function takeTurn(manager: EntityManager, stationId: number): Promise<void
   await manager.query(`SELECT pg_advisory_xact_lock(hashtext('whichwire live spots'), $1)`, [stationId]);
 }
 
-/** $1 station, $2 import, $3 and $4 the first and last second of the batch: they keep other months out. */
+/** $1 station, $2 and $3 the first and last second of the batch: they keep other months out. */
 function insertSpots(live: boolean, guard: Guard): string {
   return `
-INSERT INTO spot (heard_at, station_id, receiver_id, call_id, freq_100hz, import_id, heard_ms, band_m, snr_db,
-  speed_wpm, mode, uncertainty_s, feed_minute)
-SELECT heard_at, $1, receiver_id, call_id, freq_100hz, $2, heard_ms, band_m, snr_db,
-  speed_wpm, mode, uncertainty_s, feed_minute
-FROM spot_staging staged
+INSERT INTO spot (${spotColumns})
+SELECT ${spotColumns} FROM spot_staging staged
 WHERE NOT EXISTS (
   SELECT FROM spot there
-  WHERE there.station_id = $1 AND there.heard_at BETWEEN $3 AND $4
+  WHERE there.station_id = $1 AND there.heard_at BETWEEN $2 AND $3
     AND there.heard_at = staged.heard_at AND there.receiver_id = staged.receiver_id
     AND there.call_id = staged.call_id AND there.freq_100hz = staged.freq_100hz)
 ${live ? notReplayed : ''}
@@ -154,7 +176,7 @@ const notReplayed = `
   AND NOT EXISTS (
     SELECT FROM spot live
     WHERE live.station_id = $1 AND live.import_id = 0
-      AND live.heard_at BETWEEN $3::timestamptz - ${reach} AND $4::timestamptz + ${reach}
+      AND live.heard_at BETWEEN $2::timestamptz - ${reach} AND $3::timestamptz + ${reach}
       AND live.heard_at BETWEEN staged.heard_at - ${reach} AND staged.heard_at + ${reach}
       AND live.receiver_id = staged.receiver_id AND live.call_id = staged.call_id
       AND live.freq_100hz = staged.freq_100hz AND live.feed_minute = staged.feed_minute)`;
