@@ -4,6 +4,7 @@
  */
 import { computed } from 'vue';
 import type { ComputedRef } from 'vue';
+import { MINUS } from './format.ts';
 import { useTheme } from '../composables/useTheme.ts';
 import type { Theme } from '../composables/useTheme.ts';
 
@@ -38,7 +39,7 @@ export interface ChartTokens extends Record<TokenName, string> {
 
 export function readChartTokens(theme: Theme): ChartTokens {
   const style = getComputedStyle(document.documentElement);
-  const read = (name: string) => style.getPropertyValue(`--${name}`).trim();
+  const read = (name: string) => fullHex(style.getPropertyValue(`--${name}`).trim());
   const rootPx = Number.parseFloat(style.fontSize) || 16;
   return {
     ...(Object.fromEntries(names.map((name) => [name, read(name)])) as Record<TokenName, string>),
@@ -47,6 +48,11 @@ export function readChartTokens(theme: Theme): ChartTokens {
     smallPx: rootPx * 0.8125,
     bodyPx: rootPx * 0.9375,
   };
+}
+
+/** The build shortens #ffffff to #fff; whoever mixes colours wants all six figures. */
+function fullHex(value: string): string {
+  return /^#[0-9a-f]{3}$/i.test(value) ? value.replaceAll(/[0-9a-f]/gi, '$&$&') : value;
 }
 
 /** The tokens of the theme on the screen; charts that put colours in their options compute from this. */
@@ -73,7 +79,10 @@ export function chartTheme(tokens: ChartTokens): Record<string, unknown> {
     title: { textStyle: { ...text, fontWeight: 600 } },
     legend: { textStyle: text },
     categoryAxis: axis,
-    valueAxis: axis,
+    valueAxis: {
+      ...axis,
+      axisLabel: { ...axis.axisLabel, formatter: (value: number) => String(value).replace('-', MINUS) },
+    },
     timeAxis: axis,
     logAxis: axis,
     angleAxis: axis,
