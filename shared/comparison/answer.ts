@@ -9,7 +9,7 @@ import {
   signedRank,
   verdict,
 } from '../stats/index.ts';
-import type { Coefficient } from '../stats/index.ts';
+import type { Coefficient, EquivalenceResult } from '../stats/index.ts';
 import { byBandAndHour, byNight, bySector, comparisonCells } from './cells.ts';
 import {
   clusterKeys,
@@ -22,6 +22,7 @@ import {
 } from './fairness.ts';
 import type { ComparisonInput } from './input.ts';
 import { offsetColumns, withoutOffsets } from './offsets.ts';
+import type { OffsetColumn } from './offsets.ts';
 import { selectHeardOnly, selectUnits } from './selection.ts';
 import type { SelectedUnits } from './selection.ts';
 import { histogram, stationRows } from './stations.ts';
@@ -35,18 +36,31 @@ const mostStationRows = 1000;
 /** Means of integers differ by rounding in the last digits: ties are ties to a billionth of a decibel. */
 const tieResolutionDb = 1e-9;
 
-/**
- * The answer to one comparison (2.3, 2.4 and 2.5 of the method): d = theta + receiver offsets + error,
- * clusters (call sign, night). Units in dB, above zero when A hears better. Never NaN: what cannot be
- * computed is null and the verdict says why. O(units).
- */
-export function answerComparison(input: ComparisonInput): ComparisonResult {
+/** The estimate and its verdict, without the pictures: what a screen that asks many questions at once needs. */
+export interface ComparisonEstimate {
+  verdict: ComparisonResult['verdict'];
+  estimate: ComparisonResult['estimate'];
+  counts: ComparisonResult['counts'];
+}
+
+interface Fitted extends ComparisonEstimate {
+  selected: SelectedUnits;
+  leftOut: ReturnType<typeof selectUnits>['leftOut'];
+  offsets: OffsetColumn[];
+  clusters: Int32Array;
+  separable: boolean;
+  coefficients: readonly Coefficient[];
+  /** Differences with the receiver offsets taken out, as far as they are known. */
+  correctedDb: Float64Array;
+  test: EquivalenceResult | null;
+}
+
+/** The regression of 2.4, item 1, its equivalence test and the verdict in words. */
+function fitComparison(input: ComparisonInput): Fitted {
   const { question, antennas, marginDb } = input;
   const { units, leftOut } = selectUnits(input);
-  const heardOnly = selectHeardOnly(input);
   const offsets = offsetColumns(units);
   const { ids: clusters, count: clusterCount } = clusterIds(clusterKeys(units));
-  const nightCount = new Set(units.night).size;
   const fit =
     units.n === 0
       ? null
@@ -57,73 +71,95 @@ export function answerComparison(input: ComparisonInput): ComparisonResult {
         );
   const theta = fit?.coefficients[0] ?? null;
   const separable = theta === null || theta.reason !== 'cannot-be-separated';
-  const rho = fit ? fit.solution.subarray(1) : new Float64Array(0);
-  const corrected = separable ? withoutOffsets(units, offsets, rho) : Float64Array.from(units.differenceDb);
-  const test = theta && separable && theta.se !== null ? equivalenceOf(theta, fit?.df ?? 0, marginDb) : null;
-  const estimate = theta && test && fit ? estimateOf(theta, fit.df, test.interval) : null;
+  const test = fit && theta?.estimable ? equivalenceOf(theta, fit.df, marginDb) : null;
+  const estimate = fit && theta && test ? estimateOf(theta, fit.df, test.interval) : null;
+  const counts = countsOf(units, clusterCount);
   const decided = verdict({
     estimate: theta?.estimate ?? null,
     interval: estimate?.interval95Db ?? null,
     interval90: estimate?.interval90Db ?? null,
-    clusters: clusterCount,
-    nights: nightCount,
+    clusters: counts.clusters,
+    nights: counts.nights,
     margin: marginDb,
     separable,
   });
   const code = decided.code.replaceAll('-', ' ') as VerdictCode;
-  const receiverName = (id: number) => input.receivers.find((r) => r.id === id)?.callSign ?? `receiver ${id}`;
+  const receiver = (id: number) => input.receivers.find((r) => r.id === id)?.callSign ?? `receiver ${id}`;
   const { tangle, cures } = separable
     ? { tangle: '', cures: [] }
-    : explainTangle(units, { a: antennas.a.name, b: antennas.b.name, receiver: receiverName });
-  const stations = stationRows(input, units, corrected, heardOnly);
-  const counts = countsOf(units, clusterCount, stations.length, nightCount);
+    : explainTangle(units, { a: antennas.a.name, b: antennas.b.name, receiver });
+  const { sectorCount } = input;
+  const names = { nameA: antennas.a.name, nameB: antennas.b.name };
+  const sentence = verdictSentence({
+    code,
+    ...names,
+    question,
+    sectorCount,
+    estimate,
+    counts,
+    marginDb,
+    tangle,
+  });
+  return {
+    verdict: { code, sentence, cures },
+    estimate,
+    counts,
+    selected: units,
+    leftOut,
+    offsets,
+    clusters,
+    separable,
+    coefficients: fit?.coefficients ?? [],
+    correctedDb:
+      separable && fit ? withoutOffsets(units, offsets, fit.solution.subarray(1)) : units.differenceDb,
+    test,
+  };
+}
+
+/** Only the verdict; several hundred a second where an hour of one band is asked for. */
+export function estimateComparison(input: ComparisonInput): ComparisonEstimate {
+  const { verdict: decided, estimate, counts } = fitComparison(input);
+  return { verdict: decided, estimate, counts };
+}
+
+/**
+ * The answer to one comparison (2.3, 2.4 and 2.5 of the method): d = theta + receiver offsets + error,
+ * clusters (call sign, night). Units in dB, above zero when A hears better. Never NaN: what cannot be
+ * computed is null and the verdict says why. O(units).
+ */
+export function answerComparison(input: ComparisonInput): ComparisonResult {
+  const { question, antennas, rules, marginDb, sectorCount } = input;
+  const fitted = fitComparison(input);
+  const { selected: units, offsets, clusters, counts, correctedDb, separable, test } = fitted;
+  const heardOnly = selectHeardOnly(input);
+  const stations = stationRows(input, units, correctedDb, heardOnly);
   const halfWeight = halfWeightStations(stations.map((s) => s.units));
 
   return {
-    question,
-    antennas,
-    rules: input.rules,
-    marginDb,
-    sectorCount: input.sectorCount,
-    verdict: {
-      code,
-      sentence: verdictSentence({
-        code,
-        nameA: antennas.a.name,
-        nameB: antennas.b.name,
-        question,
-        sectorCount: input.sectorCount,
-        estimate,
-        counts,
-        marginDb,
-        tangle,
-      }),
-      cures,
-    },
-    estimate,
-    counts,
+    ...{ question, antennas, rules, marginDb, sectorCount },
+    ...{ verdict: fitted.verdict, estimate: fitted.estimate, counts },
     offsets: offsets.flatMap((o, k) => {
-      const c = fit?.coefficients[k + 1];
+      const c = fitted.coefficients[k + 1];
       if (!c || c.estimate === null) return [];
       const { receiverId, againstReceiverId, bandMetres } = o;
       return [
         { receiverId, againstReceiverId, bandMetres, offsetDb: c.estimate, intervalDb: tuple(c.interval) },
       ];
     }),
-    rank: separable ? rankView(corrected, clusters, clusterCount, question.zeros) : null,
+    rank: separable ? rankView(correctedDb, clusters, counts.clusters, question.zeros) : null,
     equivalence: test && test.p !== null ? { p: test.p, equivalent: test.equivalent } : null,
-    histogram: histogram(corrected),
+    histogram: histogram(correctedDb),
     sectors: comparisonCells(units, offsets, clusters, bySector),
     bandHours: { basis: question.hourBasis, cells: comparisonCells(units, offsets, clusters, byBandAndHour) },
     nights: comparisonCells(units, offsets, clusters, byNight),
     fairness: {
-      exclusions: countExclusions(input, leftOut),
+      exclusions: countExclusions(input, fitted.leftOut),
       receiverBalance: receiverBalance(units),
       listening: listeningHours(input),
       separable,
       heardOnly: heardOnlyTest(heardOnly),
       halfWeightStations: halfWeight,
-      warnings: thinEvidence(clusterCount, nightCount, halfWeight, stations.length),
+      warnings: thinEvidence(counts.clusters, counts.nights, halfWeight, counts.stations),
     },
     stations: stations.slice(0, mostStationRows),
     stationsTruncated: stations.length > mostStationRows,
@@ -134,8 +170,10 @@ function tuple(interval: readonly [number, number] | null): [number, number] | n
   return interval && [interval[0], interval[1]];
 }
 
-function equivalenceOf(theta: Coefficient, df: number, margin: number) {
-  return equivalence({ estimate: theta.estimate!, se: theta.se, df }, { margin });
+function equivalenceOf(theta: Coefficient, df: number, margin: number): EquivalenceResult | null {
+  return theta.estimate === null
+    ? null
+    : equivalence({ estimate: theta.estimate, se: theta.se, df }, { margin });
 }
 
 function estimateOf(
@@ -156,13 +194,15 @@ function estimateOf(
   };
 }
 
-function countsOf(units: SelectedUnits, clusters: number, stations: number, nights: number) {
+function countsOf(units: SelectedUnits, clusters: number): ComparisonResult['counts'] {
   let matches = 0;
   let alternating = 0;
   for (let i = 0; i < units.n; i++) {
     if (units.alternating[i] === 1) alternating++;
     else matches += units.countA[i]!;
   }
+  const stations = new Set(units.call).size;
+  const nights = new Set(units.night).size;
   return {
     units: units.n,
     matches,
