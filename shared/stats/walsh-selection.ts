@@ -22,7 +22,8 @@ export interface WalshMatrix {
 
 /** @param values finite numbers; copied, not changed */
 export function walshMatrix(values: ArrayLike<number>): WalshMatrix {
-  const half = Float64Array.from(values, (value) => value / 2).sort();
+  // Adding zero turns minus zero into zero.
+  const half = Float64Array.from(values, (value) => value / 2 + 0).sort();
   return { half, size: (half.length * (half.length + 1)) / 2 };
 }
 
