@@ -8,6 +8,7 @@ import { inTurn, tryClaim } from './claim.mjs';
 import { ensureDebianPackages } from './debian.mjs';
 import { launch } from './launch.mjs';
 import { checkNodeVersion, ensurePackages } from './packages.mjs';
+import { listenForStopRequests } from './stop-requests.mjs';
 import { LaunchError, createTerminal, formatElapsed, printFailure } from './terminal.mjs';
 
 /**
@@ -103,27 +104,6 @@ async function describeSetUp({ url, cluster, setUpToken }, settings) {
   ];
 }
 
-/** @param {AbortController} stopping */
-function listenForCtrlC(stopping) {
-  let firstAt = Number.POSITIVE_INFINITY;
-  /** @type {() => void} */
-  let onImpatience = () => undefined;
-  for (const name of /** @type {const} */ (['SIGINT', 'SIGTERM', 'SIGHUP'])) {
-    process.on(name, () => {
-      // npm passes the terminal's Ctrl-C on, so that one key press may arrive twice.
-      if (performance.now() - firstAt > 1_000) onImpatience();
-      firstAt = Math.min(firstAt, performance.now());
-      stopping.abort();
-    });
-  }
-  return {
-    /** @param {() => void} react */
-    onSecond: (react) => {
-      onImpatience = react;
-    },
-  };
-}
-
 async function main() {
   const startedAt = performance.now();
   const unknown = process.argv.slice(2).filter((argument) => argument !== '--no-demo');
@@ -133,7 +113,7 @@ async function main() {
   const terminal = createTerminal();
   const stopping = new AbortController();
   const { signal } = stopping;
-  const ctrlC = listenForCtrlC(stopping);
+  const requests = listenForStopRequests(() => stopping.abort());
 
   checkNodeVersion(root);
   const attempt = await tryClaim(root, 'running', `still starting, as process ${process.pid}`);
@@ -160,7 +140,7 @@ async function main() {
       return launch(plan, { terminal, signal });
     });
     attempt.claim.describe(`${running.url}, process ${process.pid}`);
-    ctrlC.onSecond(() => running.kill());
+    requests.onImpatience(() => running.kill());
     terminal.line(`\nReady after ${formatElapsed(performance.now() - startedAt)}:  ${running.url}`);
     for (const text of demo ? await describeDemoAccounts(running) : await describeSetUp(running, settings))
       terminal.line(text);

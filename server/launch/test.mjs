@@ -8,6 +8,7 @@ import { openThrowAwayCluster } from './cluster.mjs';
 import { run, signalGroup, spawnChild } from './commands.mjs';
 import { ensureDebianPackages, findChromium } from './debian.mjs';
 import { checkNodeVersion, ensurePackages } from './packages.mjs';
+import { listenForStopRequests } from './stop-requests.mjs';
 import { readVitestReport } from './test-report.mjs';
 import { LaunchError, createTerminal, printFailure } from './terminal.mjs';
 
@@ -145,8 +146,7 @@ async function main() {
   const terminal = createTerminal();
   const stopping = new AbortController();
   const { signal } = stopping;
-  for (const name of /** @type {const} */ (['SIGINT', 'SIGTERM', 'SIGHUP']))
-    process.on(name, () => stopping.abort());
+  listenForStopRequests(() => stopping.abort());
 
   checkNodeVersion(root);
   terminal.line(mayInstall ? 'Testing Whichwire.' : 'Checking Whichwire, installing nothing.');
