@@ -17,7 +17,7 @@ export function fixtureAnswer(overrides: Partial<ComparisonAnswer> = {}): Compar
       kinds: [],
       rules: null,
       marginDb: null,
-      zeros: 'pratt',
+      zeros: 'drop',
       hourBasis: 'utc',
     },
     antennas: {

@@ -78,7 +78,7 @@ export function histogramPicture(context: PictureContext): Picture {
         {
           type: 'rect',
           shape: { x: at(low), y: box.top, width: Math.max(1, at(high) - at(low)), height },
-          style: { fill: tokens.text, opacity: 0.16 },
+          style: { fill: tokens.text, opacity: 0.26 },
         },
         verticalLine(middle, box.top, height, { stroke: tokens.text, lineWidth: 2.5 }),
         {
