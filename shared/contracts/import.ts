@@ -8,7 +8,8 @@ export type ImportKind = z.infer<typeof importKind>;
 const column = z.union([z.string().min(1).max(200), z.number().int().min(1).max(1000)]);
 
 export const fileFormat = z.object({
-  encoding: z.enum(['utf-8', 'utf-16le', 'windows-1252', 'iso-8859-15']).default('utf-8'),
+  /** A byte order mark at the file's start rules over this. */
+  encoding: z.enum(['utf-8', 'utf-16le', 'utf-16be', 'windows-1252', 'iso-8859-15']).default('utf-8'),
   delimiter: z.enum([',', ';', '\t', '|', ' ']).default(','),
   quote: z.enum(['"', "'", '']).default('"'),
   hasHeader: z.boolean().default(true),
@@ -17,9 +18,10 @@ export const fileFormat = z.object({
 });
 
 /**
- * How a file's times are written. `pattern` uses yyyy MM dd HH mm ss SSS (and MMM for English month
- * names); `iso` takes ISO 8601; the epochs count from 1970-01-01 UTC. Times without an offset are UTC
- * unless a zone is named.
+ * How a file's times are written. `pattern` uses yyyy (or yy), MM (or M, or MMM for English month names),
+ * dd (or d), HH (or H), mm, ss and SSS; everything else in it stands for itself. A pattern without a date
+ * takes its days from `firstDay`. `iso` takes ISO 8601; the epochs count from 1970-01-01 UTC. Times without
+ * an offset are UTC unless a zone is named.
  */
 export const timeFormat = z.discriminatedUnion('kind', [
   z.object({ kind: z.literal('iso'), zone: z.string().max(60).default('UTC') }),
@@ -108,6 +110,8 @@ export const importRecord = z.object({
   rowsStored: z.number(),
   rowsDoubled: z.number(),
   rowsRefused: z.number(),
+  /** Of receivers that are not the station's, left out as the mapping says. */
+  rowsSkipped: z.number(),
   rowsUndone: z.number(),
   bytesDone: z.number(),
   rowsPerSecond: z.number().nullable(),
@@ -230,7 +234,8 @@ export const listImportRefusals = endpoint({
 export const downloadImportRefusals = endpoint({
   method: 'GET',
   path: '/stations/:stationId/imports/:importId/refusals.csv',
-  summary: 'Refused lines as CSV (line, field, reason, raw): correct them and send them again',
+  summary:
+    'Refused lines as CSV: line, field and reason before the columns of the file itself (or before `raw`, the whole line, where it has no header). Correct it and upload it like any other file',
   params: importParams,
   reply: z.string(),
   media: { reply: 'text/csv' },
