@@ -4,6 +4,7 @@ import { auditRoutes } from './audit/audit.routes.ts';
 import { authRoutes } from './auth/auth.routes.ts';
 import { profileRoutes } from './auth/profile.routes.ts';
 import { comparisonRoutes } from './comparisons/comparison.routes.ts';
+import { dwellRoutes } from './dwells/dwell.routes.ts';
 import { eventRoutes } from './events/event.routes.ts';
 import { healthRoutes } from './health/health.routes.ts';
 import { jobRoutes } from './jobs/job.routes.ts';
@@ -22,6 +23,7 @@ export function apiRoutes(deps: Deps): Route[] {
     ...memberRoutes(deps),
     ...tokenRoutes(deps),
     ...auditRoutes(deps),
+    ...dwellRoutes(deps),
     ...comparisonRoutes(deps),
     ...trialRoutes(deps),
     ...jobRoutes(deps),

@@ -22,13 +22,18 @@ export const newDwell = z
     endsAt: instant.nullable(),
     note: note.default(''),
   })
-  .refine((d) => d.endsAt === null || d.endsAt > d.startsAt, {
+  // Compared as times: as text, 18:05:00.5Z would come before 18:05:00Z.
+  .refine((d) => d.endsAt === null || Date.parse(d.endsAt) > Date.parse(d.startsAt), {
     path: ['endsAt'],
     message: 'The end must come after the start.',
   });
 export type NewDwell = z.infer<typeof newDwell>;
 
-/** One correction of the switch log. A list of them is previewed, and applied, as a whole or not at all. */
+/**
+ * One correction of the switch log. A list of them is previewed, and applied, as a whole or not at all.
+ * They are taken in order; whether dwells overlap is asked of the outcome only, so that two dwells can trade
+ * places. After a split `dwellId` names the earlier part: split from the latest to the earliest.
+ */
 export const dwellChange = z.discriminatedUnion('action', [
   z.object({ action: z.literal('add'), dwell: newDwell }),
   z.object({
@@ -60,8 +65,14 @@ export const dwellPreview = z.object({
   spotsLosingAntenna: z.number().int(),
   /** Spots that move into or out of a guard while their antenna stays. */
   spotsChangingGuard: z.number().int(),
+  /** Blocks of the standing rules, within the time of the station's spots, that the change reaches. */
   blocksTouched: z.number().int(),
   nightsTouched: z.array(day),
+  /**
+   * What is accepted and may still be a slip: an antenna outside its dates of service. What was connected
+   * was connected, and whoever corrects the log cannot always change the antenna's dates.
+   */
+  warnings: z.array(z.string()),
 });
 export type DwellPreview = z.infer<typeof dwellPreview>;
 
@@ -80,6 +91,8 @@ export const listNowOn = endpoint({
   params: stationParams,
   reply: z.object({ items: z.array(z.object({ receiverId: id, dwell: dwell.nullable() })) }),
 });
+/** No text is taken for a number here: an antenna may be called 80. */
+const idNumber = z.number().int().min(1).max(2_147_483_647);
 /** "Now on": closes the receiver's open dwell and opens the next one, in one transaction. */
 export const switchReceiver = endpoint({
   method: 'POST',
@@ -87,14 +100,21 @@ export const switchReceiver = endpoint({
   summary: 'Log that a receiver is now on an antenna (by hand, or by a switch controller with an API token)',
   params: stationParams,
   body: z.object({
-    /** Receiver by id or by call sign. */
-    receiver: z.union([id, z.string().trim().min(1).max(20)]),
-    /** Antenna by id or by name; null: disconnected. */
-    antenna: z.union([id, z.string().trim().min(1).max(40)]).nullable(),
-    /** Now unless given. */
+    /** Receiver by id (a number) or by call sign (text, any letter case). */
+    receiver: z.union([idNumber, z.string().trim().min(1).max(20)]),
+    /** Antenna by id (a number) or by name (text, any letter case); null: disconnected. */
+    antenna: z.union([idNumber, z.string().trim().min(1).max(40)]).nullable(),
+    /** Now unless given; not before what the log holds already, and at most a minute ahead. */
     at: instant.optional(),
   }),
-  reply: z.object({ dwell: dwell.nullable(), changed: z.boolean() }),
+  reply: z.object({
+    /** What the receiver is on after the call; null: disconnected. */
+    dwell: dwell.nullable(),
+    /** false: it was on this antenna already, and nothing was logged. */
+    changed: z.boolean(),
+    /** The switch is logged whatever the antenna's dates of service say; then this says so. */
+    warning: z.string().nullable(),
+  }),
 });
 export const previewDwellChanges = endpoint({
   method: 'POST',
@@ -135,7 +155,7 @@ export const listDwellHistory = endpoint({
 export const undoDwellChange = endpoint({
   method: 'POST',
   path: '/stations/:stationId/dwells/history/:batchId/undo',
-  summary: 'Take a change back, unless later changes touch the same dwells',
+  summary: 'Take a change back, unless later changes touch the same dwells or their time',
   params: stationParams.extend({ batchId: uuid }),
   reply: z.object({ batchId: uuid, dwells: z.array(dwell), preview: dwellPreview }),
 });

@@ -26,6 +26,11 @@ export const spotRow = z.object({
 });
 export type SpotRow = z.infer<typeof spotRow>;
 
+/**
+ * Antenna and tag are not stored but derived, so a filter on them has to look at spots that it then leaves
+ * out. The server looks for about a second: a page may hold fewer rows than asked for, even none, and still
+ * have a `next`. Only `next: null` means that there are no more.
+ */
 export const listSpots = endpoint({
   method: 'GET',
   path: '/stations/:stationId/spots',
