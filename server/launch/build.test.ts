@@ -39,7 +39,8 @@ beforeEach(() => {
 
 afterEach(() => rmSync(root, { recursive: true, force: true }));
 
-describe('the bundle of server and worker', () => {
+// They run compilers and programs: on a busy machine that takes longer than a unit test may.
+describe('the bundle of server and worker', { timeout: 60_000 }, () => {
   test('every entry becomes one file that runs under Node', async () => {
     await build();
     for (const [name, path] of Object.entries(entries)) {

@@ -3,8 +3,11 @@ import { once } from 'node:events';
 import { mkdtempSync, rmSync } from 'node:fs';
 import { tmpdir } from 'node:os';
 import { join, resolve } from 'node:path';
-import { afterEach, beforeEach, expect, test } from 'vitest';
+import { afterEach, beforeEach, expect, test, vi } from 'vitest';
 import { inTurn, tryClaim } from './claim.mjs';
+
+// Real processes: on a busy machine they take longer to begin than a unit test may.
+vi.setConfig({ testTimeout: 60_000 });
 
 let root: string;
 

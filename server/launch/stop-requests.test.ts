@@ -2,7 +2,10 @@ import { spawn } from 'node:child_process';
 import { once } from 'node:events';
 import { resolve } from 'node:path';
 import { createInterface } from 'node:readline';
-import { expect, test } from 'vitest';
+import { expect, test, vi } from 'vitest';
+
+// Real processes: on a busy machine they take longer to begin than a unit test may.
+vi.setConfig({ testTimeout: 60_000 });
 
 const listener = `
   import { listenForStopRequests } from ${JSON.stringify(resolve('server/launch/stop-requests.mjs'))};

@@ -6,6 +6,9 @@ import { join, resolve } from 'node:path';
 import { afterEach, beforeEach, expect, test, vi } from 'vitest';
 import { createSupervisor } from './supervisor.mjs';
 
+// Real processes: on a busy machine they take longer to begin than a unit test may.
+vi.setConfig({ testTimeout: 60_000 });
+
 let root: string;
 let said: string[];
 let supervisor: ReturnType<typeof createSupervisor>;
@@ -14,7 +17,7 @@ const isAlive = (pid: number) =>
   existsSync(`/proc/${pid}`) && !/^State:\s+Z/m.test(readFileSync(`/proc/${pid}/status`, 'utf8'));
 const log = (name: string) =>
   existsSync(join(root, `${name}.log`)) ? readFileSync(join(root, `${name}.log`), 'utf8') : '';
-const waitFor = (check: () => void) => vi.waitFor(check, { timeout: 10_000, interval: 20 });
+const waitFor = (check: () => void) => vi.waitFor(check, { timeout: 30_000, interval: 20 });
 
 beforeEach(() => {
   root = mkdtempSync(join(tmpdir(), 'launch-supervisor-'));

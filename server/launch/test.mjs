@@ -42,6 +42,19 @@ function nodeStep(label, args) {
   };
 }
 
+/**
+ * What changes the checkout is done in turn with a `npm start` beside us. The tests are not: they start the
+ * program themselves.
+ *
+ * @param {import('./terminal.mjs').Terminal} terminal
+ * @param {() => Promise<void>} work
+ */
+function alone(terminal, work) {
+  const onWait = (/** @type {string} */ holder) =>
+    terminal.line(`  Waiting for another command in this folder: ${holder}.`);
+  return inTurn(root, `npm test, process ${process.pid}`, onWait, work);
+}
+
 /** Independent of each other: run two at a time, the slowest first. @type {Step[]} */
 const steps = [
   nodeStep('Types (vue-tsc)', ['node_modules/vue-tsc/bin/vue-tsc.js', '--noEmit']),
@@ -53,10 +66,11 @@ const steps = [
   ]),
   {
     label: 'Production build',
-    work: async ({ terminal, signal }) => {
-      await buildServer(root, { terminal, signal });
-      await buildClient(root, { terminal, signal });
-    },
+    work: ({ terminal, signal }) =>
+      alone(terminal, async () => {
+        await buildServer(root, { terminal, signal });
+        await buildClient(root, { terminal, signal });
+      }),
   },
   nodeStep('Format (prettier)', [
     'node_modules/prettier/bin/prettier.cjs',
@@ -150,30 +164,27 @@ async function main() {
 
   checkNodeVersion(root);
   terminal.line(mayInstall ? 'Testing Whichwire.' : 'Checking Whichwire, installing nothing.');
-  const onWait = (/** @type {string} */ holder) =>
-    terminal.line(`  Waiting for another command in this folder: ${holder}.`);
-  return inTurn(root, `npm test, process ${process.pid}`, onWait, async () => {
+  await alone(terminal, async () => {
     await ensurePackages(root, { terminal, signal, mayInstall });
     signal.throwIfAborted();
     await ensureDebianPackages({ terminal, needsBrowser: true, mayInstall });
-    signal.throwIfAborted();
-    const given = process.env.TEST_DATABASE_URL;
-    const cluster =
-      given === undefined
-        ? await terminal.step('Making a throw-away database', () => openThrowAwayCluster({ signal }))
-        : null;
-    try {
-      if (cluster === null) terminal.line('  Using the database of TEST_DATABASE_URL.');
-      const url = cluster?.url('postgres', 'postgres') ?? given;
-      const env = { ...process.env, TEST_DATABASE_URL: url, CHROMIUM_PATH: findChromium() ?? '' };
-      const context = { env, signal, terminal };
-      const checked = vitestArgs.length > 0 ? { passed: 0, failed: 0 } : await runSteps(context);
-      const tested = await runVitest(context, vitestArgs);
-      return { passed: checked.passed + tested.passed, failed: checked.failed + tested.failed };
-    } finally {
-      await cluster?.stop();
-    }
   });
+  signal.throwIfAborted();
+  const given = process.env.TEST_DATABASE_URL;
+  const cluster = given
+    ? null
+    : await terminal.step('Making a throw-away database', () => openThrowAwayCluster({ signal }));
+  try {
+    if (cluster === null) terminal.line('  Using the database of TEST_DATABASE_URL.');
+    const url = cluster?.url('postgres', 'postgres') ?? given;
+    const env = { ...process.env, TEST_DATABASE_URL: url, CHROMIUM_PATH: findChromium() ?? '' };
+    const context = { env, signal, terminal };
+    const checked = vitestArgs.length > 0 ? { passed: 0, failed: 0 } : await runSteps(context);
+    const tested = await runVitest(context, vitestArgs);
+    return { passed: checked.passed + tested.passed, failed: checked.failed + tested.failed };
+  } finally {
+    await cluster?.stop();
+  }
 }
 
 try {
