@@ -2,6 +2,14 @@ import type { CheckedClusters } from './cluster-ids.ts';
 import type { CheckedDesign } from './design.ts';
 import type { LeastSquares } from './least-squares.ts';
 
+/** Cell of each row in the order of the clusters; empty without cells. */
+export function inClusterOrder({ cells }: CheckedDesign, { order }: CheckedClusters): Int32Array {
+  if (!cells) return new Int32Array(0);
+  const ordered = new Int32Array(order.length);
+  for (let at = 0; at < order.length; at++) ordered[at] = cells[order[at]!]!;
+  return ordered;
+}
+
 /** Sum of a b over the rows of each cluster. */
 function sumByCluster(a: Float64Array, b: Float64Array, ids: Int32Array, size: number): Float64Array {
   const sums = new Float64Array(size);
@@ -25,6 +33,7 @@ export function clusterSandwich(
   fit: LeastSquares,
   weights: Float64Array | null,
   clusters: CheckedClusters,
+  cellsInOrder: Int32Array = inClusterOrder(design, clusters),
 ): Float64Array {
   const { cells, cellCount } = design;
   const { residuals, basis, inverse, centred, cellMeans, cellWeights } = fit;
@@ -65,13 +74,12 @@ export function clusterSandwich(
   for (let g = 0; g < size; g++) {
     let count = 0;
     for (let at = starts[g]!; at < starts[g + 1]!; at++) {
-      const i = order[at]!;
-      const c = cells[i]!;
+      const c = cellsInOrder[at]!;
       if (isTouched[c] === 0) {
         isTouched[c] = 1;
         touched[count++] = c;
       }
-      own[c]! += scores[i]!;
+      own[c]! += scores[order[at]!]!;
     }
     for (let p = 0; p < count; p++) {
       const c = touched[p]!;
@@ -139,18 +147,22 @@ export function inverseDiagonal(design: CheckedDesign, fit: LeastSquares): Float
 }
 
 /** Per coefficient: rows with a value other than zero, and the clusters they belong to. O(n m). */
-export function support(design: CheckedDesign, { ids, size, order }: CheckedClusters) {
-  const { n, cells, cellCount, columns } = design;
+export function support(
+  design: CheckedDesign,
+  clustering: CheckedClusters,
+  cellsInOrder: Int32Array = inClusterOrder(design, clustering),
+): { rows: Int32Array; clusters: Int32Array } {
+  const { cellCount, columns } = design;
+  const { ids, size, starts } = clustering;
   const rows = new Int32Array(cellCount + columns.length);
   const clusters = new Int32Array(cellCount + columns.length);
-  if (cells) {
-    const last = new Int32Array(cellCount).fill(-1);
-    for (let at = 0; at < n; at++) {
-      const i = order[at]!;
-      const c = cells[i]!;
+  const last = new Int32Array(cellCount).fill(-1);
+  for (let g = 0; cellCount > 0 && g < size; g++) {
+    for (let at = starts[g]!; at < starts[g + 1]!; at++) {
+      const c = cellsInOrder[at]!;
       rows[c]! += 1;
-      if (last[c] !== ids[i]) clusters[c]! += 1;
-      last[c] = ids[i]!;
+      clusters[c]! += Number(last[c] !== g);
+      last[c] = g;
     }
   }
   columns.forEach((column, j) => {

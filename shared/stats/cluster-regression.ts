@@ -1,5 +1,5 @@
 import { largestSize, type Numbers, requireNumbers, requireOpenUnit, requirePositive } from './arguments.ts';
-import { clusterSandwich, inverseDiagonal, support } from './cluster-covariance.ts';
+import { clusterSandwich, inClusterOrder, inverseDiagonal, support } from './cluster-covariance.ts';
 import { groupClusters, pairClusters, readClusters } from './cluster-ids.ts';
 import { type Design, readDesign } from './design.ts';
 import { type Interval, tResult, type TResult } from './intervals.ts';
@@ -173,12 +173,15 @@ export function clusterRegression(
           ? 'no-spread'
           : null;
 
+  const cellsInOrder = inClusterOrder(checked, first);
   let covariance: Float64Array | null = null;
   let oneWayCovariances: Float64Array[] = [];
   if (general === null) {
     const way = (ids: typeof first) => {
       const factor = (ids.count / (ids.count - 1)) * ((n - 1) / (n - rank));
-      return clusterSandwich(checked, fit, weights, ids).map((value) => value * factor);
+      return clusterSandwich(checked, fit, weights, ids, ids === first ? cellsInOrder : undefined).map(
+        (value) => value * factor,
+      );
     };
     covariance = way(first);
     if (second) {
@@ -192,7 +195,7 @@ export function clusterRegression(
   const squares = weightedDot(residuals, residuals, weights);
   const residualVariance = n > rank ? squares / (n - rank) : null;
   const naive = inverseDiagonal(checked, fit);
-  const held = support(checked, first);
+  const held = support(checked, first, cellsInOrder);
   const heldSecond = second ? support(checked, second).clusters : held.clusters;
   const confounded = joinedGroups(nullSpace, k).filter((group) => group.length > 1);
   const tangled = new Map(confounded.flatMap((group) => group.map((j) => [j, group] as const)));

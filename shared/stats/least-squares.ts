@@ -31,13 +31,13 @@ export interface LeastSquares {
   nullSpace: number[][];
 }
 
-/** Subtracts the weighted cell means and returns them; a second pass removes their rounding error. */
+/** Values less their weighted cell mean, and the means; a second pass removes their rounding error. */
 function centre(
   values: Float64Array,
   cells: Int32Array,
   weights: Float64Array | null,
   totals: Float64Array,
-): Float64Array {
+): { centred: Float64Array; means: Float64Array } {
   const means = new Float64Array(totals.length);
   const sums = new Float64Array(totals.length);
   const takeMeans = () => {
@@ -51,18 +51,19 @@ function centre(
   takeMeans();
   const first = means.slice();
   sums.fill(0);
+  const centred = new Float64Array(values.length);
   for (let i = 0; i < values.length; i++) {
     const c = cells[i]!;
     const rest = values[i]! - first[c]!;
-    values[i] = rest;
+    centred[i] = rest;
     sums[c]! += weights ? weights[i]! * rest : rest;
   }
   takeMeans();
   // Mostly the first mean was right to the last digit and nothing is left to subtract.
   if (largestSize(sums) > 2 * Number.EPSILON * largestSize(means)) {
-    for (let i = 0; i < values.length; i++) values[i]! -= sums[cells[i]!]!;
+    for (let i = 0; i < values.length; i++) centred[i]! -= sums[cells[i]!]!;
   }
-  return means;
+  return { centred, means };
 }
 
 /** Sum of w a b. */
@@ -107,10 +108,12 @@ export function leastSquares(
   if (cells) for (let i = 0; i < n; i++) cellWeights[cells[i]!]! += weights ? weights[i]! : 1;
 
   const lengths = columns.map((column) => Math.sqrt(weightedDot(column, column, weights)));
-  const centred = columns.map((column) => (cells ? column.slice() : column));
-  const cellMeans = cells ? centred.map((column) => centre(column, cells, weights, cellWeights)) : [];
-  const residuals = y.slice();
-  const cellValues = cells ? centre(residuals, cells, weights, cellWeights) : cellWeights;
+  const parts = cells ? columns.map((column) => centre(column, cells, weights, cellWeights)) : null;
+  const centred = parts ? parts.map((part) => part.centred) : columns;
+  const cellMeans = parts ? parts.map((part) => part.means) : [];
+  const { centred: residuals, means: cellValues } = cells
+    ? centre(y, cells, weights, cellWeights)
+    : { centred: y.slice(), means: cellWeights };
 
   const scales = lengths.map((own) => (own > 0 ? 1 / own : 0));
   const m = columns.length;

@@ -58,7 +58,7 @@ function doubledMidRanks(sizes: Float64Array): Float64Array {
  * Sources: Wilcoxon (1945), Pratt (1959), Hollander and Wolfe (1973). Equals R wilcox.test (exact
  * without ties and zeros; correct = TRUE otherwise) and, with ties, coin::wilcoxsign_test.
  *
- * Time O(n log n), exact O(n^3 / 6) additions (0.4 s at n = 1,000); memory O(n^2) numbers at most.
+ * Time O(n log n), exact O(n^3 / 6) additions (about 0.2 s at n = 1,000); memory O(n^2) numbers at most.
  * All differences zero: n = 0, every p is 1.
  *
  * @param args differences (dB), or two lists a and b of equal length whose differences a - b count;

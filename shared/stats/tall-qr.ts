@@ -53,12 +53,33 @@ function foldColumn(r: Float64Array, block: Float64Array, k: number, width: numb
   const head = first - diagonal;
   const scale = -1 / (diagonal * head);
   r[k * width + k] = diagonal;
-  for (let j = k + 1; j < width; j++) {
+  // Two columns at a time: their sums do not wait for each other in the processor.
+  let j = k + 1;
+  for (; j + 1 < width; j += 2) {
+    const one = j * blockRows;
+    const two = one + blockRows;
+    let dotOne = head * r[k * width + j]!;
+    let dotTwo = head * r[k * width + j + 1]!;
+    for (let i = 0; i < rows; i++) {
+      const value = block[own + i]!;
+      dotOne += value * block[one + i]!;
+      dotTwo += value * block[two + i]!;
+    }
+    const factorOne = dotOne * scale;
+    const factorTwo = dotTwo * scale;
+    r[k * width + j]! -= factorOne * head;
+    r[k * width + j + 1]! -= factorTwo * head;
+    for (let i = 0; i < rows; i++) {
+      const value = block[own + i]!;
+      block[one + i]! -= factorOne * value;
+      block[two + i]! -= factorTwo * value;
+    }
+  }
+  for (; j < width; j++) {
     const other = j * blockRows;
     let dot = head * r[k * width + j]!;
     for (let i = 0; i < rows; i++) dot += block[own + i]! * block[other + i]!;
     const factor = dot * scale;
-    if (factor === 0) continue;
     r[k * width + j]! -= factor * head;
     for (let i = 0; i < rows; i++) block[other + i]! -= factor * block[own + i]!;
   }
