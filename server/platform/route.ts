@@ -47,6 +47,8 @@ export interface RouteContext<E extends Endpoint> {
     detail?: Record<string, unknown>,
     stationId?: number,
   ): Promise<void>;
+  /** In place of `audit`, when the request found everything as it wanted it and changed nothing. */
+  nothingToAudit(): void;
   req: Request;
   res: Response;
 }

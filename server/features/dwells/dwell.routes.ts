@@ -27,7 +27,11 @@ export function dwellRoutes(deps: Deps): Route[] {
       contract.switchReceiver,
       // The one thing that a switch controller does.
       { access: inStation('dwell:write', 'dwell:write'), audit: 'dwell.switch' },
-      async ({ params, body, actor, audit }) => switches.switchTo(params.stationId, body, actor, audit),
+      async ({ params, body, actor, audit, nothingToAudit }) => {
+        const reply = await switches.switchTo(params.stationId, body, actor, audit);
+        if (!reply.changed) nothingToAudit();
+        return reply;
+      },
     ),
     route(contract.previewDwellChanges, { access: write }, async ({ params, body, actor }) =>
       service.preview(params.stationId, body.changes, actor),
