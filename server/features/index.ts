@@ -7,6 +7,7 @@ import { comparisonRoutes } from './comparisons/comparison.routes.ts';
 import { dwellRoutes } from './dwells/dwell.routes.ts';
 import { eventRoutes } from './events/event.routes.ts';
 import { healthRoutes } from './health/health.routes.ts';
+import { importRoutes } from './imports/import.routes.ts';
 import { jobRoutes } from './jobs/job.routes.ts';
 import { memberRoutes } from './members/member.routes.ts';
 import { stationRoutes } from './station/station.routes.ts';
@@ -26,6 +27,7 @@ export function apiRoutes(deps: Deps): Route[] {
     ...dwellRoutes(deps),
     ...comparisonRoutes(deps),
     ...trialRoutes(deps),
+    ...importRoutes(deps),
     ...jobRoutes(deps),
     ...eventRoutes(deps),
   ];

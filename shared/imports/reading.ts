@@ -136,7 +136,8 @@ export function createReceiverFinder(
     const known = found.get(name);
     if (known !== undefined) return known;
     const trimmed = name.trim();
-    const id = byName.get(trimmed) ?? byCall.get(bareReceiverCall(trimmed)) ?? null;
+    const upper = trimmed.toUpperCase().replace(/-#$/, '');
+    const id = byName.get(trimmed) ?? byCall.get(upper) ?? byCall.get(bareReceiverCall(trimmed)) ?? null;
     if (found.size < 10_000) found.set(name, id);
     return id;
   };

@@ -9,6 +9,7 @@ export interface SpotLine {
   call: string;
   mode: string;
   snrDb: string;
+  /** Empty where there is none, or bits a second. */
   speedWpm: string;
   /** Minute of the UTC day. */
   minute: number;
@@ -21,7 +22,7 @@ export interface SpotLineRefusal {
 
 /** Up to the clock, which is the last thing that every such line has. */
 const frame = /^\s*DX\s+de\s+([^\s:]+)\s*:\s*(\S+)\s+(\S+)\s+(.*?)\s*\b(\d\d)(\d\d)Z(?:\W.*)?$/i;
-const report = /^(\S+)\s+([+\-−]?\d+)\s*dB\b(?:\s+(\d+)\s*(?:WPM|BPS)\b)?/i;
+const report = /^(\S+)\s+([+\-−]?\d+)\s*dB\b(?:\s+(\d+)\s*WPM\b)?/i;
 const example = 'DX de EI7QSA-#: 1824.5 EA8QSH CW 21 dB 22 WPM CQ 1812Z';
 
 export function parseSpotLine(line: string): SpotLine | SpotLineRefusal {
