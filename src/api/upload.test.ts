@@ -2,6 +2,8 @@ import { createServer } from 'node:http';
 import type { IncomingMessage, Server, ServerResponse } from 'node:http';
 import type { AddressInfo } from 'node:net';
 import { afterEach, beforeEach, describe, expect, it } from 'vitest';
+import { z } from 'zod';
+import { endpoint } from '../../shared/contracts/common.ts';
 import { uploadImport } from '../../shared/contracts/import.ts';
 import { dropAccess, takeAccess } from './access.ts';
 import { upload } from './client.ts';
@@ -17,31 +19,17 @@ const profile = {
   createdAt: '2026-11-30T18:00:00Z',
   memberships: [],
 };
-const record = {
-  id: 5,
-  kind: 'spots',
-  fileName: 'night.txt',
-  sha256: null,
-  sizeBytes: 11,
-  state: 'uploaded',
-  mapping: null,
-  rowsRead: 0,
-  rowsStored: 0,
-  rowsDoubled: 0,
-  rowsRefused: 0,
-  rowsUndone: 0,
-  bytesDone: 0,
-  rowsPerSecond: null,
-  secondsLeft: null,
-  firstAt: null,
-  lastAt: null,
-  error: null,
-  createdBy: null,
-  createdAt: '2026-11-30T18:00:00Z',
-  finishedAt: null,
-  jobId: null,
-  sameAsImportId: null,
-};
+const record = { id: 5 };
+/** As the contract of imports is built, without its many columns, which change for reasons of their own. */
+const uploadFile = endpoint({
+  method: 'POST',
+  path: uploadImport.path,
+  summary: 'Upload a file',
+  params: uploadImport.params,
+  query: uploadImport.query,
+  reply: z.object({ id: z.number() }),
+  media: uploadImport.media,
+});
 const inTenMinutes = () => new Date(Date.now() + 600_000).toISOString();
 const input = {
   params: { stationId: 1 },
@@ -84,7 +72,7 @@ afterEach(async () => {
 describe('an upload', () => {
   it('sends the file as the multipart field "file" and reads the reply', async () => {
     answer = (_, response) => json(response, 201, record);
-    const reply = await upload(uploadImport, input);
+    const reply = await upload(uploadFile, input);
     expect(reply.id).toBe(5);
     expect(seen[0]?.line).toBe('POST /api/stations/1/imports?kind=spots');
     expect(seen[0]?.authorization).toBe('Bearer token');
@@ -98,7 +86,7 @@ describe('an upload', () => {
       incoming.url === '/api/auth/refresh'
         ? json(response, 200, { accessToken: 'new', expiresAt: inTenMinutes(), profile })
         : json(response, 201, record);
-    await upload(uploadImport, input);
+    await upload(uploadFile, input);
     expect(seen.map((each) => each.line)).toEqual([
       'POST /api/auth/refresh',
       'POST /api/stations/1/imports?kind=spots',
@@ -117,13 +105,13 @@ describe('an upload', () => {
           code: 'big',
         }),
       );
-    const error = await upload(uploadImport, input).catch((reason: unknown) => asProblem(reason));
+    const error = await upload(uploadFile, input).catch((reason: unknown) => asProblem(reason));
     expect(error).toMatchObject({ status: 413, message: 'At most 500 MB.' });
   });
 
   it('can be taken back before it starts', async () => {
     answer = (_, response) => json(response, 201, record);
-    const error = await upload(uploadImport, { ...input, signal: AbortSignal.abort() }).catch(
+    const error = await upload(uploadFile, { ...input, signal: AbortSignal.abort() }).catch(
       (reason: unknown) => reason,
     );
     expect(isAbort(error)).toBe(true);

@@ -1,14 +1,14 @@
 import { createPinia, setActivePinia } from 'pinia';
 import { createApp } from 'vue';
 import { createMemoryHistory } from 'vue-router';
-import type { Router } from 'vue-router';
+import type { RouteLocationRaw, Router } from 'vue-router';
 import { afterEach, beforeEach, describe, expect, it } from 'vitest';
 import { dropAccess } from '../api/access.ts';
 import { profileFixture, signedInFixture, startLocalServer } from '../../tests/helpers/client-server.ts';
 import type { LocalServer } from '../../tests/helpers/client-server.ts';
 import { useSessionStore } from '../stores/session.ts';
 import { homeOf, safeReturnPath } from './home.ts';
-import { createAppRouter } from './index.ts';
+import { admit, createAppRouter } from './index.ts';
 import { stationPages } from './routes.ts';
 
 let server: LocalServer;
@@ -29,43 +29,57 @@ afterEach(async () => {
 
 const signIn = () => useSessionStore().signInWith('analyst@example.org', 'secret');
 
-describe('the guards of the router', () => {
-  it('send a stranger to sign-in, remembering where they wanted to go', async () => {
-    await router.push('/s/1/settings?tab=2');
-    expect(router.currentRoute.value).toMatchObject({
+/** What the guard says of an address, without loading the view behind it. */
+const ask = (path: string) => admit(router.resolve(path));
+
+describe('the guard of the router', () => {
+  it('sends a stranger to sign-in, remembering where they wanted to go', async () => {
+    expect(await ask('/s/1/settings?tab=2')).toEqual({
       name: 'sign-in',
       query: { next: '/s/1/settings?tab=2' },
     });
-    expect(document.title).toBe('Sign in - Whichwire');
+    expect(await ask('/')).toEqual({ name: 'sign-in', query: {} });
   });
 
-  it('let a stranger read an invitation without asking who they are', async () => {
-    await router.push('/invitation#a-token');
-    expect(router.currentRoute.value.name).toBe('invitation');
+  it('lets a stranger read an invitation without asking who they are', async () => {
+    localStorage.setItem('whichwire.session', 'yes');
+    expect(await ask('/invitation#a-token')).toBe(true);
     expect(server.seen).toEqual([]);
   });
 
-  it('let a member in', async () => {
+  it('lets a member in at each of their stations', async () => {
     await signIn();
-    await router.push('/s/2/settings');
-    expect(router.currentRoute.value).toMatchObject({ name: 'settings', params: { stationId: '2' } });
+    expect([await ask('/s/1/settings'), await ask('/s/2/settings')]).toEqual([true, true]);
   });
 
-  it('show a foreign station and one that never was as the same nothing, under the same address', async () => {
+  it('shows a foreign station and one that never was as the same nothing, under the same address', async () => {
     await signIn();
-    for (const path of ['/s/77/settings', '/s/0/settings', '/nowhere/at/all']) {
-      await router.push(path);
-      expect(router.currentRoute.value).toMatchObject({ name: 'not-found', path });
+    for (const path of ['/s/77/settings', '/s/0/settings']) {
+      const target = (await ask(path)) as RouteLocationRaw;
+      expect(router.resolve(target)).toMatchObject({ name: 'not-found', path });
     }
+    expect(router.resolve('/nowhere/at/all').name).toBe('not-found');
   });
 
-  it('send whoever is signed in from the door to the start page', async () => {
+  it('refuses a page that the role does not include', async () => {
     await signIn();
-    await router.push('/sign-in');
-    expect(router.currentRoute.value.params.stationId).toBe('1');
-    await router.push('/?station=2');
-    expect(router.currentRoute.value.params.stationId).toBe('2');
+    const page = router.resolve('/s/2/settings');
+    const managed = { ...page, meta: { ...page.meta, permission: 'member:manage' as const } };
+    expect(await admit(managed)).toMatchObject({ name: 'not-found' });
   });
+
+  it('sends whoever is signed in from the door to the start page of a station of theirs', async () => {
+    await signIn();
+    expect(await ask('/sign-in')).toEqual({ name: 'home' });
+    expect(await ask('/')).toMatchObject({ params: { stationId: 1 } });
+    expect(await ask('/?station=2')).toMatchObject({ params: { stationId: 2 } });
+    expect(await ask('/?station=77')).toMatchObject({ params: { stationId: 1 } });
+  });
+});
+
+it('a page gives its name to the document', async () => {
+  await router.push('/sign-in');
+  expect(document.title).toBe('Sign in - Whichwire');
 });
 
 describe('the start page', () => {
