@@ -28,9 +28,12 @@ export interface Run {
 const knotMs = 30 * 60_000;
 const minuteMs = 60_000;
 /** Runs on the air in an average night, sized so that three receivers report some 30,000 spots. */
-const runsPerNight = 1000;
-/** A path whose median level is this gets half of its stations on the air, dB. */
-const workableLevelDb = 9;
+const runsPerNight = 930;
+/**
+ * A path whose median level is this gets half of its stations on the air, dB: people call where they expect
+ * to be heard, well above the threshold at which the last receiver just decodes them.
+ */
+const workableLevelDb = 15;
 
 const cwSegmentsKhz: ReadonlyMap<BandMetres, readonly [number, number]> = new Map([
   [160, [1810.5, 1838]],

@@ -27,9 +27,9 @@ export const demoFading: FadingDepth = {
   driftDb: 3,
   slowDb: 2.5,
   fastDb: 2.5,
-  antennaNightDb: 1.2,
+  antennaNightDb: 1.8,
   antennaSlowDb: 1.2,
-  antennaFastDb: 2.5,
+  antennaFastDb: 2,
   measurementDb: 1,
 };
 

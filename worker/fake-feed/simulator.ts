@@ -39,8 +39,8 @@ export interface SimulatorOptions {
    * above the decode threshold, so that nothing is selected by strength and the true difference of two
    * antennas is one number. Without it only stations strong enough on BOTH antennas make units: where the
    * weaker antenna is near the threshold, its lucky fades are kept and its others never seen. That pulls
-   * a both-heard comparison toward zero, in the demo by some 5 to 20 % of the difference: real stations
-   * have the same bias, and the censored view is the answer to it.
+   * a both-heard comparison toward zero, in the demo by some 2 to 4 % of the difference: real stations
+   * have the same bias, the larger the weaker they hear, and the censored view is the answer to it.
    */
   study?: boolean;
 }

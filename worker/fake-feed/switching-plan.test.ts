@@ -1,7 +1,10 @@
 import fc from 'fast-check';
-import { describe, expect, it } from 'vitest';
+import { describe, expect, it, vi } from 'vitest';
 import { createDemoScenario } from './scenario.ts';
 import { createSwitchingPlan, type PlannedDwell } from './switching-plan.ts';
+
+// Many logs of a month are compared; a busy machine may take its time over them.
+vi.setConfig({ testTimeout: 60_000 });
 
 const scenario = createDemoScenario('2026-11-01');
 const plan = createSwitchingPlan(11, scenario);

@@ -117,13 +117,13 @@ describe('the truth behind the simulator', () => {
     expect(Math.abs(meanErrorDb)).toBeLessThan(0.1);
   });
 
-  it('is pulled toward zero in the demo, by the stated share, since weak stations drop out', () => {
+  it('is found in the demo too but for a few per cent, by which the loss of weak stations pulls toward zero', () => {
     const clear = askAll(false).filter(({ truthDb }) => Math.abs(truthDb) > 1.5);
     expect(clear.length).toBeGreaterThanOrEqual(30);
     const found = clear.reduce((sum, a) => sum + a.estimateDb * Math.sign(a.truthDb), 0);
     const real = clear.reduce((sum, a) => sum + Math.abs(a.truthDb), 0);
-    expect(found / real).toBeGreaterThan(0.8);
-    expect(found / real).toBeLessThan(0.97);
+    expect(found / real).toBeGreaterThan(0.94);
+    expect(found / real).toBeLessThan(1.02);
   });
 
   it('has one difference a band in the ideal study, whoever is heard from wherever', () => {
