@@ -126,11 +126,6 @@ export function createSpotLineParser(): (line: string) => ParsedLine {
   };
 }
 
-/** The receiver that a line names, as written; null for a line that is no spot. Far cheaper than parsing. */
-export function receiverOfLine(line: string): string | null {
-  return /^\s*DX de\s+([^\s:]+)\s*:/i.exec(line)?.[1] ?? null;
-}
-
 function refuse(receiver: string | null, field: RefusedLine['field'], reason: string): RefusedLine {
   return { kind: 'refused', field, reason, receiver };
 }
