@@ -49,8 +49,5 @@ const escapes: Readonly<Record<string, string>> = { '\\': '\\\\', '\t': '\\t', '
 
 /** PostgreSQL's text cannot hold U+0000: a file in the wrong encoding is full of it. */
 function copyCell(text: string): string {
-  return text
-    .toWellFormed()
-    .replaceAll('\u0000', '\ufffd')
-    .replace(/[\\\t\n\r]/g, (character) => escapes[character]!);
+  return text.replaceAll('\u0000', '\ufffd').replace(/[\\\t\n\r]/g, (character) => escapes[character]!);
 }
