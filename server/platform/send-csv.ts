@@ -1,4 +1,3 @@
-import { once } from 'node:events';
 import type { Response } from 'express';
 import { csvLine } from './csv.ts';
 
@@ -20,8 +19,19 @@ export async function sendCsv(
     batch += csvLine(cells);
     if (batch.length < 65_536) continue;
     if (res.destroyed) return;
-    if (!res.write(batch)) await Promise.race([once(res, 'drain'), once(res, 'close')]);
+    if (!res.write(batch)) await drainedOrClosed(res);
     batch = '';
   }
   res.end(batch);
+}
+
+/** Takes both listeners off again: a long download waits thousands of times on one response. */
+function drainedOrClosed(res: Response): Promise<void> {
+  return new Promise((resolve) => {
+    const done = () => {
+      res.off('drain', done).off('close', done);
+      resolve();
+    };
+    res.on('drain', done).on('close', done);
+  });
 }
