@@ -11,6 +11,8 @@ import { keepHouse } from './jobs/housekeeping.ts';
 import { createJobRunner } from './jobs/job-runner.ts';
 import { startTimedJobs } from './jobs/timed-jobs.ts';
 import { readWorkerConfig } from './platform/config.ts';
+import { createUnitMaker } from './units/unit-maker.ts';
+import { runUnitsJob } from './units/units.job.ts';
 
 /**
  * The second process: reads live feeds, runs jobs, keeps house. Any number of them work side by side over
@@ -53,9 +55,12 @@ const jobs = createJobRunner({
   logger,
   workerName: config.workerName,
   concurrency: config.jobConcurrency,
-  handlers: { bearings: runBearingsJob },
+  handlers: { bearings: runBearingsJob, units: runUnitsJob },
 });
 shutdown.onStop('jobs', () => jobs.stop());
+
+const units = createUnitMaker({ dataSource, logger });
+shutdown.onStop('units', () => units.stop());
 
 const timedJobs = startTimedJobs({
   dataSource,
@@ -76,11 +81,14 @@ const listener = createListener({
   channels: [jobChannel, eventChannel],
   logger,
   onMessage: (channel, payload) => {
-    if (channel === jobChannel) jobs.wake();
-    else if (changesFeeds(payload)) feeds.wake();
+    if (channel === jobChannel) {
+      jobs.wake();
+      units.wake();
+    } else if (changesFeeds(payload)) feeds.wake();
   },
   onConnected: () => {
     jobs.wake();
+    units.wake();
     feeds.wake();
   },
 });
@@ -89,6 +97,7 @@ shutdown.onStop('listener', () => listener.stop());
 
 feeds.start();
 jobs.start();
+units.start();
 logger.info({ worker: config.workerName }, 'listening');
 
 /** Only what a person changes: the events about spots and health are the worker's own. */

@@ -12,6 +12,7 @@ import { jobRoutes } from './jobs/job.routes.ts';
 import { memberRoutes } from './members/member.routes.ts';
 import { stationRoutes } from './station/station.routes.ts';
 import { tokenRoutes } from './tokens/token.routes.ts';
+import { tonightRoutes } from './tonight/tonight.routes.ts';
 import { trialRoutes } from './trials/trial.routes.ts';
 
 /** Every route of the API. What is not in this list does not exist; tests walk it. */
@@ -26,6 +27,7 @@ export function apiRoutes(deps: Deps): Route[] {
     ...auditRoutes(deps),
     ...dwellRoutes(deps),
     ...comparisonRoutes(deps),
+    ...tonightRoutes(deps),
     ...trialRoutes(deps),
     ...importRoutes(deps),
     ...jobRoutes(deps),

@@ -2,9 +2,11 @@ import { readFileSync } from 'node:fs';
 import { afterAll, beforeAll, describe, expect, it } from 'vitest';
 import { compare, comparisonAnswer, exportUnits } from '../../shared/contracts/comparison.ts';
 import type { ComparisonAnswer } from '../../shared/contracts/comparison.ts';
+import { readJob } from '../../shared/contracts/job.ts';
 import { markDirty } from '../../server/database/dirty-blocks.ts';
 import { makeAllDirtyNights } from '../../worker/units/dirty-nights.ts';
-import { makeUnitsUnderOtherRules } from '../../worker/units/units-job.ts';
+import { createJobRunner } from '../../worker/jobs/job-runner.ts';
+import { runUnitsJob } from '../../worker/units/units.job.ts';
 import { startTestApi } from '../helpers/api.ts';
 import type { TestApi } from '../helpers/api.ts';
 import { storeSampleStation } from '../helpers/sample-station.ts';
@@ -128,15 +130,28 @@ describe('a comparison over HTTP', () => {
     ]);
     expect([first.status, second.status]).toEqual([202, 202]);
     expect(first.body).toEqual(second.body);
-    const steps: number[] = [];
-    await makeUnitsUnderOtherRules({
+    const runner = createJobRunner({
       dataSource: api.dataSource,
-      stationId: swap.stationId,
-      rulesKey: 'b30.w30.f3.g20',
-      signal: new AbortController().signal,
-      progress: async (done) => void steps.push(done),
+      logger: api.deps.logger,
+      workerName: 'test',
+      concurrency: 1,
+      handlers: { units: runUnitsJob },
     });
-    expect(steps).toEqual([0, 1, 2, 3, 4]);
+    const ended = new Promise<void>((resolve) => {
+      const stop = api.deps.eventHub.subscribe(swap.stationId, (event) => {
+        if (event.type !== 'job') return;
+        void api
+          .call(readJob, { params: { stationId: swap.stationId, jobId: event.jobId }, token: analyst })
+          .then((reply) => {
+            if ((reply.body as { state: string }).state !== 'done') return;
+            stop();
+            resolve();
+          });
+      });
+    });
+    runner.start();
+    await ended;
+    await runner.stop();
     const answer = answerOf(await ask(swap, contester, 'ALPHA', 'BRAVO', { rules }));
     const standing = answerOf(await ask(swap, contester, 'ALPHA', 'BRAVO'));
     // The receivers swap at every quarter hour: half an hour holds the same units by receiver, and each

@@ -1,8 +1,9 @@
 import { nightDate, nightIndexOf } from '../../../shared/radio/night.ts';
 import { HORIZON_DEG, nightSun, sunAltitudeDeg } from '../../../shared/radio/sun.ts';
 import { rulesKey } from '../../../shared/pairing/index.ts';
-import type { LivePair, TonightAnswer } from '../../../shared/contracts/tonight.ts';
+import type { TonightAnswer } from '../../../shared/contracts/tonight.ts';
 import type { Station } from '../../../shared/contracts/station.ts';
+import { readRecentPairs } from '../../database/recent-pairs.ts';
 import type { Deps } from '../../platform/deps.ts';
 import { listReceivers, readStation } from '../station/station.read-model.ts';
 import { readPairUnits } from '../comparisons/comparison.read-model.ts';
@@ -13,14 +14,14 @@ import { readBusyBands, readReceiversNow, readUsableAntennas } from './tonight.r
 
 /** How far back the evidence of this hour reaches. */
 const evidenceNights = 30;
+/** The pairs that a screen starts with; later ones come by events. */
+const pairsShownMs = 10 * 60_000;
+const pairsShown = 40;
 const usualBands = [160, 80, 40];
 /** Advice changes by the minute at most; screens that watch must not make it be computed each second. */
 const adviceKeptMs = 30_000;
 
-export function createTonightService(
-  deps: Deps,
-  readLivePairs: (stationId: number, atMs: number) => Promise<LivePair[]>,
-) {
+export function createTonightService(deps: Deps) {
   const { manager } = deps.dataSource;
   const kept = new Map<string, { atMs: number; bands: Promise<BandAdvice[]> }>();
 
@@ -74,7 +75,11 @@ export function createTonightService(
       const station = await readStation(manager, stationId);
       const [receivers, pairs] = await Promise.all([
         readReceiversNow(manager, stationId, new Date(atMs)),
-        readLivePairs(stationId, atMs),
+        readRecentPairs(deps.dataSource, stationId, {
+          fromMs: atMs - pairsShownMs,
+          toMs: atMs,
+          limit: pairsShown,
+        }),
       ]);
       const inUse = inUseId ?? receivers.find((receiver) => receiver.antenna_id !== null)?.antenna_id ?? null;
       return {

@@ -1,38 +1,31 @@
-import type { DataSource } from 'typeorm';
 import { Station } from '../../server/database/entities/station.ts';
 import { inTransaction } from '../../server/database/transaction.ts';
 import { parseRulesKey, rulesKey } from '../../shared/pairing/index.ts';
 import { nightIndexOfDate } from '../../shared/radio/night.ts';
+import type { JobHandler } from '../jobs/job-handler.ts';
 import { standingRules } from './dirty-nights.ts';
 import { lockNight, makeNight } from './night-maker.ts';
 
-export interface UnitsJobContext {
-  dataSource: DataSource;
-  stationId: number;
-  rulesKey: string;
-  signal: AbortSignal;
-  progress: (done: number, total: number) => Promise<void>;
-}
-
 /** Makes the nights that exist under the standing rules also under other rules; repeats nothing that is made. */
-export async function makeUnitsUnderOtherRules(context: UnitsJobContext): Promise<void> {
-  const { dataSource, stationId } = context;
-  const rules = parseRulesKey(context.rulesKey);
+export const runUnitsJob: JobHandler<'units'> = async ({ job, dataSource, signal, progress, assertOurs }) => {
+  const { stationId, payload } = job;
+  const rules = parseRulesKey(payload.rulesKey);
   const station = await dataSource.manager.findOneByOrFail(Station, { id: stationId });
   const missing: { night: string }[] = await dataSource.query(
     `SELECT night FROM unit_night s WHERE station_id = $1 AND rules_key = $2
        AND NOT EXISTS (SELECT 1 FROM unit_night o WHERE o.station_id = $1 AND o.rules_key = $3 AND o.night = s.night)
      ORDER BY night DESC`,
-    [stationId, rulesKey(standingRules(station)), context.rulesKey],
+    [stationId, rulesKey(standingRules(station)), payload.rulesKey],
   );
-  await context.progress(0, missing.length);
+  progress(0, missing.length);
   for (const [done, { night }] of missing.entries()) {
-    context.signal.throwIfAborted();
+    signal.throwIfAborted();
     const index = nightIndexOfDate(night);
     await inTransaction(dataSource, async (manager) => {
+      await assertOurs(manager);
       await lockNight(manager, stationId, index);
       await makeNight(manager, station, index, rules, Date.now());
     });
-    await context.progress(done + 1, missing.length);
+    progress(done + 1, missing.length);
   }
-}
+};
