@@ -23,7 +23,7 @@ function writeSource(path: string, text: string) {
   writeFileSync(join(root, path), text);
 }
 
-const build = () => buildServer(root, { terminal: createTerminal((line) => lines.push(line)) });
+const build = () => buildServer(root, { terminal: createTerminal((text) => lines.push(text), false) });
 const madeAt = () => statSync(join(root, 'dist', 'server.js')).mtimeMs;
 
 beforeEach(() => {

@@ -88,7 +88,9 @@ export async function launch(plan, { terminal, signal }) {
         JWT_SECRET: secrets.jwt,
       };
       for (const script of plan.scripts) {
-        await terminal.step(script.label, () => runScript(script, { root, env: scriptEnv, say, signal }));
+        await terminal.step(script.label, () =>
+          runScript(script, { root, env: scriptEnv, terminal, signal }),
+        );
       }
     } finally {
       // Neither half may be left working in the background, whatever became of the other.
@@ -154,14 +156,14 @@ function settle(works) {
 
 /**
  * @param {{ label: string, args: string[] }} script
- * @param {{ root: string, env: Environment, say: (text: string) => void, signal?: AbortSignal }} options
+ * @param {{ root: string, env: Environment, terminal: import('./terminal.mjs').Terminal, signal?: AbortSignal }} options
  */
-async function runScript({ label, args }, { root, env, say, signal }) {
+async function runScript({ label, args }, { root, env, terminal, signal }) {
   const { code, output } = await run(process.execPath, args, {
     cwd: root,
     env: { ...env, NODE_ENV: 'production' },
     signal,
-    onLine: (line) => say(`      ${line}`),
+    onLine: (line) => terminal.progress(line),
   });
   if (code !== 0) throw new LaunchError(`${label}: ended with code ${code}.\n${lastLines(output, 20)}`);
 }

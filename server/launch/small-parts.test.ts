@@ -77,9 +77,27 @@ describe('the terminal', () => {
     expect(formatElapsed(milliseconds)).toBe(text);
   });
 
+  test('on a screen each progress text replaces the one before, and the result replaces the last', async () => {
+    let shown = '';
+    const terminal = createTerminal((text) => (shown += text), true);
+    await terminal.step('Loading', async () => {
+      terminal.progress('night 1');
+      terminal.progress('night 2');
+    });
+    expect(shown).toMatch(/^ {6}night 1\r\u001b\[2K {6}night 2\r\u001b\[2K {2}ok {2}Loading \(0\.\d s\)\n$/);
+  });
+
+  test('in a log file each progress text is a line', () => {
+    let written = '';
+    const terminal = createTerminal((text) => (written += text), false);
+    terminal.progress('night 1');
+    terminal.progress('night 2');
+    expect(written).toBe('      night 1\n      night 2\n');
+  });
+
   test('a failed step is said to have failed and passes its error on', async () => {
     const lines: string[] = [];
-    const step = createTerminal((line) => lines.push(line)).step('Building', () =>
+    const step = createTerminal((text) => lines.push(text), false).step('Building', () =>
       Promise.reject(new Error('no room')),
     );
     await expect(step).rejects.toThrow('no room');

@@ -14,9 +14,15 @@ export class LaunchError extends Error {
   }
 }
 
-/** @typedef {{ line(text?: string): void, step<T>(label: string, work: () => Promise<T>): Promise<T> }} Terminal */
+/**
+ * @typedef {object} Terminal
+ * @property {(text?: string) => void} line
+ * @property {(text: string) => void} progress how far a step has come; each replaces the one before where the screen can do so
+ * @property {<T>(label: string, work: () => Promise<T>) => Promise<T>} step
+ */
 
 const announceAfterMs = 1_000;
+const eraseLine = '\r\u001b[2K';
 
 /** @param {number} milliseconds */
 export function formatElapsed(milliseconds) {
@@ -27,12 +33,27 @@ export function formatElapsed(milliseconds) {
 }
 
 /**
- * @param {(text: string) => void} [write] where finished lines go; without their line end
+ * @param {(text: string) => void} [put] where the text goes, line ends included
+ * @param {boolean} [canRewrite] whether `put` ends on a screen that understands control codes
  * @returns {Terminal}
  */
-export function createTerminal(write = (text) => process.stdout.write(`${text}\n`)) {
+export function createTerminal(
+  put = (text) => process.stdout.write(text),
+  canRewrite = process.stdout.isTTY === true,
+) {
+  let isProgressShown = false;
+  /** @param {string} text */
+  const write = (text) => {
+    put(`${isProgressShown ? eraseLine : ''}${text}\n`);
+    isProgressShown = false;
+  };
   return {
     line: (text = '') => write(text),
+    progress: (text) => {
+      if (!canRewrite) return write(`      ${text}`);
+      put(`${isProgressShown ? eraseLine : ''}      ${text}`);
+      isProgressShown = true;
+    },
     async step(label, work) {
       const startedAt = performance.now();
       const announcement = setTimeout(() => write(`  ... ${label}`), announceAfterMs);
