@@ -10,6 +10,7 @@ import { healthRoutes } from './health/health.routes.ts';
 import { importRoutes } from './imports/import.routes.ts';
 import { jobRoutes } from './jobs/job.routes.ts';
 import { memberRoutes } from './members/member.routes.ts';
+import { spotRoutes } from './spots/spot.routes.ts';
 import { stationRoutes } from './station/station.routes.ts';
 import { tokenRoutes } from './tokens/token.routes.ts';
 import { tonightRoutes } from './tonight/tonight.routes.ts';
@@ -26,6 +27,7 @@ export function apiRoutes(deps: Deps): Route[] {
     ...tokenRoutes(deps),
     ...auditRoutes(deps),
     ...dwellRoutes(deps),
+    ...spotRoutes(deps),
     ...comparisonRoutes(deps),
     ...tonightRoutes(deps),
     ...trialRoutes(deps),

@@ -258,7 +258,7 @@ describe('the switch log as CSV', () => {
       ...call(),
       query: { from: at('18:10:00'), to: at('18:11:00') },
     });
-    expect(parse<string[]>(part.text, {}).map((cells) => cells[1])).toEqual(['antenna', 'Vertical', 'West']);
+    expect(parse(part.text, {}).map((cells) => cells[1])).toEqual(['antenna', 'Vertical', 'West']);
     const turned = { from: at('18:10:00'), to: at('18:10:00') };
     const refused = await api.call(exportDwells, { ...call(), query: turned });
     expect(refused.status).toBe(400);
@@ -274,7 +274,7 @@ describe('the switch log as CSV', () => {
        FROM generate_series(0, 6499) AS n, unnest($2::int[]) AS receiver`,
       [stationId, receiverIds, antennaIds[0]],
     );
-    const lines = parse<string[]>((await api.call(exportDwells, call())).text, {}).slice(1);
+    const lines = parse((await api.call(exportDwells, call())).text, {}).slice(1);
     expect(lines).toHaveLength(13_002);
     expect(new Set(lines.map((cells) => `${cells[0]} ${cells[2]}`)).size).toBe(13_002);
     expect(lines.map((cells) => cells[2])).toEqual(lines.map((cells) => cells[2]).sort());

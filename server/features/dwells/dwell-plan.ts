@@ -1,8 +1,9 @@
 import type { DwellChange } from '../../../shared/contracts/dwell.ts';
+import { clockText } from '../../platform/clock-text.ts';
 import { InvalidRequest } from '../../platform/errors.ts';
 import type { DwellRecord, DwellStep } from './dwell-record.ts';
 import { saysTheSame } from './dwell-record.ts';
-import { clock } from './dwell-wording.ts';
+import { spanText } from './dwell-wording.ts';
 
 /** Who adds dwells by these changes, and when. */
 export interface DwellAuthor {
@@ -64,14 +65,18 @@ export function planChanges(
           throw refusal(
             i,
             field,
-            `The dwell would start at ${clock(dwell.startMs)} and end at ${clock(dwell.endMs)}: the end must come after the start.`,
+            `The dwell would start at ${clockText(dwell.startMs)} and end at ${clockText(dwell.endMs)}: the end must come after the start.`,
           );
         }
         break;
       case 'split': {
         const atMs = Date.parse(change.at);
         if (atMs <= dwell.startMs || (dwell.endMs !== null && atMs >= dwell.endMs)) {
-          throw refusal(i, 'at', `Split within the dwell, which runs ${rangeText(dwell)}.`);
+          throw refusal(
+            i,
+            'at',
+            `Split within the dwell, which runs ${spanText(dwell.startMs, dwell.endMs)}.`,
+          );
         }
         const { receiverId, endMs, note } = dwell;
         add('split', i, { receiverId, antennaId: change.antennaId, startMs: atMs, endMs, note, ...origin });
@@ -83,12 +88,12 @@ export function planChanges(
           throw refusal(
             i,
             'dwellId',
-            `This dwell ended at ${clock(dwell.endMs)} already: edit its end instead.`,
+            `This dwell ended at ${clockText(dwell.endMs)} already: edit its end instead.`,
           );
         }
         dwell.endMs = Date.parse(change.at);
         if (dwell.endMs <= dwell.startMs) {
-          throw refusal(i, 'at', `Close it after its start, ${clock(dwell.startMs)}.`);
+          throw refusal(i, 'at', `Close it after its start, ${clockText(dwell.startMs)}.`);
         }
         break;
       case 'delete':
@@ -119,12 +124,6 @@ export function overlapWithin(
 
 function timesOf(startsAt: string, endsAt: string | null) {
   return { startMs: Date.parse(startsAt), endMs: endsAt === null ? null : Date.parse(endsAt) };
-}
-
-function rangeText(dwell: DwellRecord): string {
-  return dwell.endMs === null
-    ? `from ${clock(dwell.startMs)} on`
-    : `from ${clock(dwell.startMs)} to ${clock(dwell.endMs)}`;
 }
 
 function refusal(changeIndex: number, field: string, message: string): InvalidRequest {

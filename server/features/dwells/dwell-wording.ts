@@ -1,3 +1,4 @@
+import { clockText } from '../../platform/clock-text.ts';
 import type { DwellRecord, DwellStep } from './dwell-record.ts';
 
 /** What sentences call receivers and antennas. */
@@ -6,13 +7,10 @@ export interface LogNames {
   antenna: (id: number) => string;
 }
 
-/** "2026-11-30 18:05:00Z"; milliseconds only where there are any. */
-export function clock(timeMs: number): string {
-  return new Date(timeMs).toISOString().replace('T', ' ').replace('.000Z', 'Z');
-}
-
 export function spanText(startMs: number, endMs: number | null): string {
-  return endMs === null ? `from ${clock(startMs)} on` : `from ${clock(startMs)} to ${clock(endMs)}`;
+  return endMs === null
+    ? `from ${clockText(startMs)} on`
+    : `from ${clockText(startMs)} to ${clockText(endMs)}`;
 }
 
 /** "EI7QSB on Vertical from 2026-11-30 18:05:00Z to 2026-11-30 18:10:00Z" */
@@ -62,10 +60,10 @@ function ownText(steps: readonly DwellStep[], names: LogNames): string | null {
     const shortened = steps.find((step) => step.before !== null)?.before;
     if (!added || !shortened) return null;
     if (isSwitch(steps)) {
-      return `${names.receiver(added.receiverId)} switched from ${names.antenna(shortened.antennaId)} to ${names.antenna(added.antennaId)} at ${clock(added.startMs)}`;
+      return `${names.receiver(added.receiverId)} switched from ${names.antenna(shortened.antennaId)} to ${names.antenna(added.antennaId)} at ${clockText(added.startMs)}`;
     }
     if (steps.every((step) => step.action === 'split')) {
-      return `Split ${dwellText(shortened, names)} at ${clock(added.startMs)}: ${names.antenna(added.antennaId)} after it`;
+      return `Split ${dwellText(shortened, names)} at ${clockText(added.startMs)}: ${names.antenna(added.antennaId)} after it`;
     }
     return null;
   }
@@ -73,7 +71,7 @@ function ownText(steps: readonly DwellStep[], names: LogNames): string | null {
   if (!before) return after && `Added ${dwellText(after, names)}`;
   if (!after) return `Deleted ${dwellText(before, names)}`;
   if (first.action === 'close' && after.endMs !== null) {
-    return `Closed ${names.receiver(after.receiverId)} on ${names.antenna(after.antennaId)} at ${clock(after.endMs)}`;
+    return `Closed ${names.receiver(after.receiverId)} on ${names.antenna(after.antennaId)} at ${clockText(after.endMs)}`;
   }
   return `Changed ${dwellText(before, names)}: ${differences(before, after, names).join(', ')}`;
 }
@@ -81,9 +79,9 @@ function ownText(steps: readonly DwellStep[], names: LogNames): string | null {
 function differences(before: DwellRecord, after: DwellRecord, names: LogNames): string[] {
   const said: string[] = [];
   if (before.antennaId !== after.antennaId) said.push(`antenna now ${names.antenna(after.antennaId)}`);
-  if (before.startMs !== after.startMs) said.push(`start now ${clock(after.startMs)}`);
+  if (before.startMs !== after.startMs) said.push(`start now ${clockText(after.startMs)}`);
   if (before.endMs !== after.endMs)
-    said.push(after.endMs === null ? 'now open' : `end now ${clock(after.endMs)}`);
+    said.push(after.endMs === null ? 'now open' : `end now ${clockText(after.endMs)}`);
   if (before.note !== after.note) said.push(after.note === '' ? 'note removed' : 'note changed');
   return said;
 }

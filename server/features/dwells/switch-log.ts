@@ -8,6 +8,7 @@ import type { Receiver } from '../../database/entities/receiver.ts';
 import { Station } from '../../database/entities/station.ts';
 import { Conflict, NotFound } from '../../platform/errors.ts';
 import { publish, wakeWorkers } from '../../platform/notify.ts';
+import { spotExtent } from '../spots/spot-extent.read-model.ts';
 import { overlapWithin } from './dwell-plan.ts';
 import type { DwellStep } from './dwell-record.ts';
 import { dwellRepository } from './dwell.repository.ts';
@@ -131,21 +132,6 @@ export function serviceWarnings(book: LogBook, steps: readonly DwellStep[]): str
     );
   }
   return [...warnings];
-}
-
-interface Extent {
-  firstMs: number;
-  lastMs: number;
-}
-
-async function spotExtent(manager: EntityManager, stationId: number): Promise<Extent | null> {
-  const rows: { first: Date | null; last: Date | null }[] = await manager.query(
-    `SELECT (SELECT heard_at FROM spot WHERE station_id = $1 ORDER BY heard_at LIMIT 1) AS first,
-            (SELECT heard_at FROM spot WHERE station_id = $1 ORDER BY heard_at DESC LIMIT 1) AS last`,
-    [stationId],
-  );
-  const { first, last } = rows[0]!;
-  return first && last ? { firstMs: first.getTime(), lastMs: last.getTime() } : null;
 }
 
 /**

@@ -5,11 +5,12 @@ import type { Antenna } from '../../database/entities/antenna.ts';
 import type { Receiver } from '../../database/entities/receiver.ts';
 import { inTransaction } from '../../database/transaction.ts';
 import type { Deps } from '../../platform/deps.ts';
+import { clockText } from '../../platform/clock-text.ts';
 import { Conflict, InvalidRequest, NotFound } from '../../platform/errors.ts';
 import { presentDwell } from './dwell-record.ts';
 import type { DwellRecord, DwellStep } from './dwell-record.ts';
 import { dwellRepository } from './dwell.repository.ts';
-import { clock, dwellText } from './dwell-wording.ts';
+import { dwellText } from './dwell-wording.ts';
 import { readLogBook, serviceWarnings, storeSteps } from './switch-log.ts';
 import type { LogActor, LogBook } from './switch-log.ts';
 
@@ -36,7 +37,7 @@ export function createSwitchService(deps: Deps) {
     ): Promise<SwitchReply> {
       const givenMs = body.at === undefined ? null : Date.parse(body.at);
       if (givenMs !== null && givenMs > deps.now() + aheadMs) {
-        const message = `${clock(givenMs)} lies ahead: a switch is logged when it happens, at most a minute early.`;
+        const message = `${clockText(givenMs)} lies ahead: a switch is logged when it happens, at most a minute early.`;
         throw new InvalidRequest(message, [{ path: 'body.at', message }]);
       }
       return inTransaction(deps.dataSource, async (manager) => {
@@ -67,7 +68,7 @@ export function createSwitchService(deps: Deps) {
         await audit(manager, String(receiver.id), {
           receiver: receiver.callSign,
           antenna: antenna?.name ?? null,
-          at: clock(atMs),
+          at: clockText(atMs),
         });
         const added = steps.find((one) => one.before === null)?.after ?? null;
         const warning =
@@ -106,7 +107,7 @@ function switchTime(givenMs: number | null, nowMs: number, newest: DwellRecord |
 }
 
 function insideLog(atMs: number, newest: DwellRecord, book: LogBook): Conflict {
-  const message = `${clock(atMs)} lies inside the log, which has ${dwellText(newest, book.names)}. Correct the log instead of switching.`;
+  const message = `${clockText(atMs)} lies inside the log, which has ${dwellText(newest, book.names)}. Correct the log instead of switching.`;
   return new Conflict(message, [{ path: 'body.at', message }]);
 }
 
