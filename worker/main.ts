@@ -7,6 +7,9 @@ import { eventChannel, notification } from '../shared/contracts/event.ts';
 import { runBearingsJob } from './bearings/bearings.job.ts';
 import { createFeedSupervisor } from './feed/feed-supervisor.ts';
 import { createLivePairs } from './feed/live-pairs.ts';
+import { settleImports } from './imports/housekeeping.ts';
+import { runImportUndoJob } from './imports/import-undo.job.ts';
+import { runImportJob } from './imports/import.job.ts';
 import { keepHouse } from './jobs/housekeeping.ts';
 import { createJobRunner } from './jobs/job-runner.ts';
 import { startTimedJobs } from './jobs/timed-jobs.ts';
@@ -55,7 +58,12 @@ const jobs = createJobRunner({
   logger,
   workerName: config.workerName,
   concurrency: config.jobConcurrency,
-  handlers: { bearings: runBearingsJob, units: runUnitsJob },
+  handlers: {
+    bearings: runBearingsJob,
+    import: runImportJob,
+    'import-undo': runImportUndoJob,
+    units: runUnitsJob,
+  },
 });
 shutdown.onStop('jobs', () => jobs.stop());
 
@@ -71,6 +79,14 @@ const timedJobs = startTimedJobs({
       name: 'housekeeping',
       schedule: '17 * * * *',
       run: async () => logger.info({ cleared: await keepHouse(dataSource) }, 'housekeeping is done'),
+    },
+    {
+      name: 'imports',
+      schedule: '* * * * *',
+      run: async () => {
+        const { cleared, settled } = await settleImports(dataSource);
+        if (cleared + settled > 0) logger.info({ cleared, settled }, 'imports are settled');
+      },
     },
   ],
 });

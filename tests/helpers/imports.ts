@@ -125,7 +125,7 @@ export function makeImportTools(api: TestApi, station: { stationId: number; toke
   };
 
   function nextImportEvent(importId: number) {
-    let stop = () => undefined as void;
+    let stop: () => void = () => undefined;
     const promise = new Promise<void>((resolve) => {
       stop = api.deps.eventHub.subscribe(stationId, (event) => {
         if (event.type !== 'import' || event.importId !== importId) return;
