@@ -152,19 +152,30 @@ function plainMean(values: Float64Array): { estimateDb: number; seDb: number } {
 
 /** The nights' rows of an antenna pair, one after the other, as the server reads them. */
 function byPair<T extends UnitColumns | HeardOnlyColumns>(nights: readonly T[]): (a: number, b: number) => T {
-  return (a, b) => {
-    const [low, high] = [Math.min(a, b), Math.max(a, b)];
+  const known = new Map<string, T>();
+  const gather = (low: number, high: number): T => {
     const stretches = nights.map((night) => {
-      const from = night.antennaA.findIndex((id, i) => id === low && night.antennaB[i] === high);
-      if (from === -1) return { night, from: 0, to: 0 };
+      let from = 0;
+      const length = night.antennaA.length;
+      while (from < length && (night.antennaA[from] !== low || night.antennaB[from] !== high)) from++;
       let to = from;
-      while (night.antennaA[to] === low && night.antennaB[to] === high) to++;
+      while (to < length && night.antennaA[to] === low && night.antennaB[to] === high) to++;
       return { night, from, to };
     });
     const names = Object.keys(nights[0]!) as (keyof T)[];
     return Object.fromEntries(
-      names.map((name) => [name, joined(stretches.map((s) => columnOf(s.night, name).subarray(s.from, s.to)))]),
+      names.map((name) => [
+        name,
+        joined(stretches.map((s) => columnOf(s.night, name).subarray(s.from, s.to))),
+      ]),
     ) as unknown as T;
+  };
+  return (a, b) => {
+    const [low, high] = [Math.min(a, b), Math.max(a, b)];
+    const key = `${low} ${high}`;
+    const columns = known.get(key) ?? gather(low, high);
+    known.set(key, columns);
+    return columns;
   };
 }
 

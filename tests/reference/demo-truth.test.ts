@@ -3,29 +3,40 @@ import { createDemoScenario, demoNights, demoSeed } from '../../worker/fake-feed
 import { simulateStation, type SimulatedAnswer } from '../helpers/simulated-station.ts';
 
 /**
- * Ground truth: the simulator knows what each antenna really does, so that the answers about the demo
- * station can be held against it. Every pair of its eight antennas is asked on every band, exactly as the
- * program does. Nothing here is tuned to the answers: the truth of a question is the antennas' true gains
- * toward the calls that were compared, and the truth is drawn from patterns alone.
+ * Ground truth: the simulator knows what each antenna really does, so that answers about the demo station
+ * can be held against it. Every pair of its eight antennas is asked on every band, all round and toward
+ * each side on which many stations live, exactly as the program asks. The truth of a question is the
+ * antennas' true gains toward the calls that were compared, as often as they were; it comes from the
+ * patterns alone, never from an answer.
  *
- * Intervals of 95 % should hold it 95 times in 100. A both-heard comparison also carries a small pull
- * toward zero (stations that only the better antenna hears make no unit), so that 90 to 99 % are allowed.
+ * Intervals of 95 % should hold it 95 times in 100. Two things push the share off that mark: stations that
+ * only the better antenna hears make no unit, which pulls toward zero (stations near the threshold, the
+ * west most of all); and all round, stations that truly differ by their direction widen the interval,
+ * while the truth is that of just these stations. 90 to 99 % are therefore allowed. The study of the
+ * estimator without either is in the simulator's own tests.
  */
 
 // Whole seasons are simulated and asked; a busy machine may take its time over them.
 vi.setConfig({ testTimeout: 300_000, hookTimeout: 300_000 });
 
 const scenario = createDemoScenario('2026-11-01');
+const marginDb = 1;
+const allRound: number[] = [];
+const towardEasternEurope = [1, 2];
+const towardSouthernEurope = [3, 4];
+const towardNorthAmerica = [9, 10];
 
-/** All pairs of antennas on all bands. */
-function askEverything(seed: number, nights: number): SimulatedAnswer[] {
+/** All pairs of antennas on all bands, toward each of the sides. */
+function askEverything(seed: number, nights: number, sides: readonly number[][]): SimulatedAnswer[] {
   const station = simulateStation({ seed, scenario, nights });
   const names = scenario.antennas.map(({ name }) => name);
   return names.flatMap((antennaA, a) =>
     names
       .slice(a + 1)
       .flatMap((antennaB) =>
-        scenario.bandsMetres.map((bandMetres) => station.ask({ antennaA, antennaB, bandMetres })),
+        sides.flatMap((sectors) =>
+          scenario.bandsMetres.map((bandMetres) => station.ask({ antennaA, antennaB, bandMetres, sectors })),
+        ),
       ),
   );
 }
@@ -38,54 +49,70 @@ function holdsTruth({ answer, truthDb }: SimulatedAnswer): boolean {
   return lo <= truthDb && truthDb <= hi;
 }
 
+function describeQuestion({ answer, truthDb, question }: SimulatedAnswer): string {
+  return `${JSON.stringify(question)}: ${answer.verdict.sentence} True: ${truthDb.toFixed(2)} dB.`;
+}
+
 describe.each([
-  { label: 'the demo as it is loaded', seed: demoSeed, nights: demoNights },
-  { label: 'another world, asked after twelve nights', seed: 20261101, nights: 12 },
-])('the truth of the simulated station: $label', ({ seed, nights }) => {
+  {
+    label: 'the demo as it is loaded',
+    seed: demoSeed,
+    nights: demoNights,
+    sides: [allRound, towardEasternEurope, towardNorthAmerica],
+  },
+  {
+    label: 'another world after three weeks',
+    seed: 2,
+    nights: 21,
+    sides: [towardEasternEurope, towardSouthernEurope, towardNorthAmerica],
+  },
+])('the truth about the simulated station, $label', ({ seed, nights, sides }) => {
   let answers: SimulatedAnswer[];
   beforeAll(() => {
-    answers = askEverything(seed, nights);
+    answers = askEverything(seed, nights, sides);
   });
 
-  it('is asked for by at least 60 questions, all of which get an estimate', () => {
-    expect(answers.length).toBeGreaterThanOrEqual(60);
-    for (const { answer, question } of answers) {
-      if (answer.estimate === null) throw new Error(`no estimate for ${JSON.stringify(question)}`);
+  it('can be asked for by far more than 60 questions, and each gets an estimate', () => {
+    expect(answers).toHaveLength(sides.length * 28 * 4);
+    for (const one of answers) {
+      if (one.answer.estimate === null) throw new Error(describeQuestion(one));
     }
   });
 
   it('lies inside the 95 % interval about 95 % of the time', () => {
     const covered = share(answers, holdsTruth);
-    console.log(`coverage, seed ${seed}, ${nights} nights: ${(100 * covered).toFixed(1)} % of ${answers.length}`);
     expect(covered).toBeGreaterThanOrEqual(0.9);
     expect(covered).toBeLessThanOrEqual(0.99);
+    for (const sectors of sides) {
+      const there = answers.filter(({ question }) => question.sectors === sectors);
+      expect(share(there, holdsTruth)).toBeGreaterThanOrEqual(0.9);
+    }
   });
 
   it('is missed far more often by intervals that take units as independent and receivers as equal', () => {
     const naive = share(answers, ({ truthDb, naive: { estimateDb, seDb } }) => {
-      // Thousands of units: the t distribution's quantile is the normal one.
+      // Hundreds of units: the t distribution's quantile is nearly the normal one.
       return Math.abs(estimateDb - truthDb) <= 1.96 * seDb;
     });
-    console.log(`naive coverage, seed ${seed}, ${nights} nights: ${(100 * naive).toFixed(1)} %`);
-    expect(naive).toBeLessThan(0.85);
-    expect(naive).toBeLessThan(share(answers, holdsTruth) - 0.1);
+    expect(naive).toBeLessThan(0.8);
+    expect(naive).toBeLessThan(share(answers, holdsTruth) - 0.15);
   });
 
-  it('never contradicts a verdict of "better", clearly or not', () => {
-    for (const { answer, truthDb, question } of answers) {
+  it('is never on the other side of a verdict of "clearly better", nor far from one of "no difference"', () => {
+    const wrong = answers.filter(({ answer, truthDb }) => {
       const { code } = answer.verdict;
-      const wrong =
-        (code.startsWith('a ') && truthDb < -0.5) ||
-        (code.startsWith('b ') && truthDb > 0.5) ||
-        (code === 'a clearly better' && truthDb <= 0) ||
-        (code === 'b clearly better' && truthDb >= 0);
-      if (wrong) throw new Error(`"${code}" against ${truthDb.toFixed(2)} dB: ${JSON.stringify(question)}`);
-    }
+      if (code === 'a clearly better') return truthDb <= 0;
+      if (code === 'b clearly better') return truthDb >= 0;
+      return code === 'no practical difference' && Math.abs(truthDb) > marginDb + 0.25;
+    });
+    expect(wrong.map(describeQuestion)).toEqual([]);
     // Not for want of verdicts: most of the pairs differ by more than the margin.
-    expect(share(answers, ({ answer }) => answer.verdict.code.endsWith('clearly better'))).toBeGreaterThan(0.5);
+    expect(share(answers, ({ answer }) => answer.verdict.code.endsWith('clearly better'))).toBeGreaterThan(
+      0.5,
+    );
   });
 
-  it('is pulled toward zero by less than 0.15 dB on the average', () => {
+  it('differs from the estimates by a pull toward zero of less than 0.15 dB on the average', () => {
     const pullsDb = answers.map(
       ({ answer, truthDb }) => (answer.estimate!.estimateDb - truthDb) * Math.sign(truthDb),
     );

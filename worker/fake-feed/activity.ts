@@ -33,7 +33,7 @@ const runsPerNight = 930;
  * A path whose median level is this gets half of its stations on the air, dB: people call where they expect
  * to be heard, well above the threshold at which the last receiver just decodes them.
  */
-const workableLevelDb = 15;
+const workableLevelDb = 17;
 
 const cwSegmentsKhz: ReadonlyMap<BandMetres, readonly [number, number]> = new Map([
   [160, [1810.5, 1838]],
@@ -111,7 +111,7 @@ export function createActivity(options: ActivityOptions): (nightIndex: number) =
           station.strengthDb;
         levelsDb[i] = levelDb;
         if (i === weights.length) continue;
-        const weight = liking / (1 + Math.exp((workableLevelDb - levelDb) / 2.5));
+        const weight = liking / (1 + Math.exp((workableLevelDb - levelDb) / 2));
         weights[i] = weight;
         total += weight;
       }

@@ -15,10 +15,10 @@ interface BandPath {
 }
 
 const paths: ReadonlyMap<BandMetres, BandPath> = new Map([
-  [160, { levelDb: 23, lossPerMegametreDb: 1.15, daylightLossDb: 60 }],
-  [80, { levelDb: 27, lossPerMegametreDb: 0.9, daylightLossDb: 45 }],
-  [40, { levelDb: 29, lossPerMegametreDb: 0.6, daylightLossDb: 24 }],
-  [30, { levelDb: 28, lossPerMegametreDb: 0.5, daylightLossDb: 10 }],
+  [160, { levelDb: 25, lossPerMegametreDb: 0.9, daylightLossDb: 60 }],
+  [80, { levelDb: 27.5, lossPerMegametreDb: 0.7, daylightLossDb: 45 }],
+  [40, { levelDb: 29, lossPerMegametreDb: 0.5, daylightLossDb: 24 }],
+  [30, { levelDb: 28, lossPerMegametreDb: 0.45, daylightLossDb: 10 }],
 ]);
 
 /** 0 in the dark, 1 in full day, for the layer that absorbs: it lies high and sees the sun before we do. */
