@@ -50,40 +50,27 @@ export function comparisonCells(
   clusters: Int32Array,
   layout: Layout,
 ): ComparisonCell[] {
-  const rows: number[] = [];
-  const keys: number[] = [];
-  for (let i = 0; i < units.n; i++) {
-    const key = layout.keyOf(units, i);
-    if (key === null) continue;
-    rows.push(i);
-    keys.push(key);
-  }
+  const { rows, cell, keys } = layOut(units, layout);
   if (rows.length === 0) return [];
-  const sorted = [...new Set(keys)].sort((a, b) => a - b);
-  const indexOf = new Map(sorted.map((key, index) => [key, index]));
-  const cell = Int32Array.from(keys, (key) => indexOf.get(key)!);
   const whole = rows.length === units.n;
-  const pick = (from: ArrayLike<number>) => Float64Array.from(rows, (i) => from[i]!);
   const fit = clusterRegression(
     {
       cells: cell,
-      cellCount: sorted.length,
-      columns: offsets.map((o) => (whole ? o.values : pick(o.values))),
+      cellCount: keys.length,
+      columns: offsets.map((o) => (whole ? o.values : pick(o.values, rows))),
     },
-    whole ? units.differenceDb : pick(units.differenceDb),
-    whole ? clusters : Int32Array.from(rows, (i) => clusters[i]!),
+    whole ? units.differenceDb : pick(units.differenceDb, rows),
+    whole ? clusters : rows.map((i) => clusters[i]!),
   );
-
-  const nights = sorted.map(() => new Set<number>());
-  rows.forEach((i, row) => nights[cell[row]!]!.add(units.night[i]!));
-  const cells = sorted.map((key, index): ComparisonCell => {
+  const nights = nightsPerCell(units, rows, cell, keys.length);
+  const cells = keys.map((key, index): ComparisonCell => {
     const c = fit.coefficients[index]!;
-    const enough = c.clusters >= CELL_MIN_CLUSTERS && nights[index]!.size >= layout.minNights;
+    const enough = c.clusters >= CELL_MIN_CLUSTERS && nights[index]! >= layout.minNights;
     return {
       ...layout.placeOf(key),
       units: c.rows,
       clusters: c.clusters,
-      nights: nights[index]!.size,
+      nights: nights[index]!,
       estimateDb: c.estimate,
       intervalDb: c.interval && [c.interval[0], c.interval[1]],
       p: c.p,
@@ -95,4 +82,63 @@ export function comparisonCells(
   const { adjusted } = benjaminiHochberg(speaking.map((c) => c.p!));
   speaking.forEach((c, k) => (c.pAdjusted = adjusted[k]!));
   return cells;
+}
+
+interface Cells {
+  /** Units that fall into a cell, ascending. */
+  rows: Int32Array;
+  /** The cell of each of them, an index into `keys`. */
+  cell: Int32Array;
+  /** Keys of the cells that have units, ascending. */
+  keys: number[];
+}
+
+/** Typed arrays throughout: this runs three times over every unit of a season for each answer. */
+function layOut(units: SelectedUnits, layout: Layout): Cells {
+  const rows = new Int32Array(units.n);
+  const keyOfRow = new Int32Array(units.n);
+  const known = new Map<number, number>();
+  let n = 0;
+  for (let i = 0; i < units.n; i++) {
+    const key = layout.keyOf(units, i);
+    if (key === null) continue;
+    rows[n] = i;
+    keyOfRow[n] = key;
+    if (!known.has(key)) known.set(key, 0);
+    n++;
+  }
+  const keys = [...known.keys()].sort((a, b) => a - b);
+  keys.forEach((key, index) => known.set(key, index));
+  return { rows: rows.subarray(0, n), cell: keyOfRow.subarray(0, n).map((key) => known.get(key)!), keys };
+}
+
+function pick(values: Float64Array, rows: Int32Array): Float64Array {
+  const picked = new Float64Array(rows.length);
+  for (let k = 0; k < rows.length; k++) picked[k] = values[rows[k]!]!;
+  return picked;
+}
+
+/** Distinct nights in each cell, by one flag a cell and night. */
+function nightsPerCell(
+  units: SelectedUnits,
+  rows: Int32Array,
+  cell: Int32Array,
+  cellCount: number,
+): Int32Array {
+  let first = Infinity;
+  let last = -Infinity;
+  for (const row of rows) {
+    first = Math.min(first, units.night[row]!);
+    last = Math.max(last, units.night[row]!);
+  }
+  const span = last - first + 1;
+  const seen = new Uint8Array(cellCount * span);
+  const nights = new Int32Array(cellCount);
+  for (let k = 0; k < rows.length; k++) {
+    const at = cell[k]! * span + units.night[rows[k]!]! - first;
+    if (seen[at] === 1) continue;
+    seen[at] = 1;
+    nights[cell[k]!]!++;
+  }
+  return nights;
 }
