@@ -31,14 +31,23 @@ interface LogRow {
  * that works by itself: what is open is closed when the plan switches next, and the new dwell begins
  * there. What people wrote stands: a planned dwell that would overlap a logged one is left out. Posting a
  * stretch again adds nothing.
+ *
+ * @param afterGap nobody switched before `fromMs`: what the plan was on by then begins there
  */
 export async function postPlan(
   dataSource: DataSource,
   world: DemoWorld,
   fromMs: number,
   nowMs: number,
+  afterGap = false,
 ): Promise<PlanOutcome> {
-  const planned = world.simulator.dwells(world.simulator.startMs, nowMs + 1);
+  const planned = world.simulator
+    .dwells(world.simulator.startMs, nowMs + 1)
+    .map((dwell) =>
+      afterGap && dwell.startMs < fromMs && (dwell.endMs ?? Infinity) > fromMs
+        ? { ...dwell, startMs: fromMs }
+        : dwell,
+    );
   const write = () =>
     inTransaction(dataSource, (manager) => writePlan(manager, world, planned, fromMs, nowMs));
   try {

@@ -72,7 +72,7 @@ async function bringUpToDate(dataSource: DataSource, options: LoadDemoOptions): 
   const heardMs = await lastHeardMs(dataSource, world);
   const fromMs = Math.max(world.simulator.startMs, earliestMs, heardMs === null ? 0 : heardMs + secondMs);
 
-  const { added } = await postPlan(dataSource, world, fromMs, nowMs);
+  const { added } = await postPlan(dataSource, world, fromMs, nowMs, fromMs === earliestMs);
   if (added > 1) onProgress(`Switch log: ${count(added)} dwells`);
   const antennas = followSwitchLog(world);
   await antennas.refresh(dataSource.manager, fromMs);
