@@ -1,4 +1,5 @@
 import { afterAll, beforeAll, describe, expect, it } from 'vitest';
+import { z } from 'zod';
 import { permissions, role } from '../../shared/contracts/permission.ts';
 import type { Role } from '../../shared/contracts/permission.ts';
 import type { Route } from '../../server/platform/route.ts';
@@ -147,5 +148,26 @@ describe('access to the API', () => {
       // A missing body is refused before the id is looked up: then the body below decides.
       if (status !== 400) expect(status, title(r)).toBe(404);
     }
+  });
+
+  it('answers 404 to ids of another station in a query', async () => {
+    const ids: Record<string, number> = { receiverId: foreign.receiverId, antennaId: foreign.antennaIds[0] };
+    const range: Record<string, string> = { from: '2026-11-30T18:00:00Z', to: '2026-11-30T19:00:00Z' };
+    let walked = 0;
+    for (const r of stationRoutes()) {
+      const known = r.endpoint.query instanceof z.ZodObject ? Object.keys(r.endpoint.query.shape) : [];
+      for (const name of known.filter((key) => key in ids)) {
+        walked += 1;
+        const search = new URLSearchParams({ [name]: String(ids[name]) });
+        for (const key of known.filter((one) => one in range)) search.set(key, range[key]!);
+        const path = r.endpoint.path.replace(':stationId', String(own.stationId));
+        const response = await fetch(`${api.url}/api${path}?${search}`, {
+          method: r.endpoint.method,
+          headers: { authorization: `Bearer ${tokens.manager}` },
+        });
+        expect(response.status, `${title(r)} with ${name}`).toBe(404);
+      }
+    }
+    expect(walked).toBeGreaterThan(2);
   });
 });
