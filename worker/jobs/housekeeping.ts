@@ -12,11 +12,14 @@ const clearings: Readonly<Record<string, string>> = {
   'rate limits': `DELETE FROM rate_limit WHERE expire < (extract(epoch FROM now()) - 3600) * 1000`,
   // Much longer than any clock of any worker may be wrong.
   'timed runs': `DELETE FROM timed_run WHERE tick < now() - interval '7 days'`,
-  'feed refusals': `DELETE FROM feed_refusal r
-    USING feed f
-    WHERE r.station_id = f.station_id AND r.feed_id = f.id AND r.id <= (
-      SELECT k.id FROM feed_refusal k WHERE k.station_id = f.station_id AND k.feed_id = f.id
-      ORDER BY k.id DESC OFFSET ${refusalsKeptPerFeed} LIMIT 1)`,
+  // Materialized: the edge of a feed is looked for once, not once for each of its rows.
+  'feed refusals': `WITH edge AS MATERIALIZED (
+      SELECT f.station_id, f.id AS feed_id, (
+        SELECT k.id FROM feed_refusal k WHERE k.station_id = f.station_id AND k.feed_id = f.id
+        ORDER BY k.id DESC OFFSET ${refusalsKeptPerFeed} LIMIT 1) AS last_id
+      FROM feed f)
+    DELETE FROM feed_refusal r USING edge
+    WHERE r.station_id = edge.station_id AND r.feed_id = edge.feed_id AND r.id <= edge.last_id`,
 };
 
 /**

@@ -17,6 +17,8 @@ export interface TimedJobsOptions {
   jobs: readonly TimedJob[];
 }
 
+const isoLength = '2026-01-05T03:00:00.000Z'.length;
+
 /**
  * Decides which worker runs a tick: the first that inserts its row. A tick whose worker dies over it is
  * not run again; what timed jobs do must therefore be made good by the next tick.
@@ -25,11 +27,13 @@ export function createRunCoordinator(dataSource: DataSource, workerName: string)
   return {
     /** `key` is `<name>:<ISO time of the tick>`, as node-cron gives it. */
     async shouldRun(key: string): Promise<boolean> {
-      const cut = key.indexOf(':');
+      // A name may hold colons as well; an ISO time is always of one length.
+      const tick = key.slice(-isoLength);
+      const name = key.slice(0, -isoLength - 1);
       const rows: unknown[] = await dataSource.query(
         `INSERT INTO timed_run (name, tick, claimed_by) VALUES ($1, $2, $3)
          ON CONFLICT (name, tick) DO NOTHING RETURNING name`,
-        [key.slice(0, cut), new Date(key.slice(cut + 1)), workerName],
+        [name, new Date(tick), workerName],
       );
       return rows.length === 1;
     },
