@@ -62,7 +62,7 @@ export default defineConfig({
           name: 'e2e',
           include: ['tests/e2e/**/*.test.ts'],
           environment: 'node',
-          globalSetup: ['tests/helpers/cluster-setup.ts'],
+          globalSetup: ['tests/helpers/cluster-setup.ts', 'tests/helpers/demo-setup.ts'],
           testTimeout: 120_000,
           hookTimeout: 120_000,
           fileParallelism: false,
