@@ -27,11 +27,15 @@ export const importHandlers: JobHandlers = {
 };
 
 /** The worker's own job runner in this process; looks at the table every tenth of a second. */
-export function startJobRunner(dataSource: DataSource, workerName = 'test worker'): JobRunner {
+export function startJobRunner(
+  dataSource: DataSource,
+  workerName = 'test worker',
+  handlers: JobHandlers = {},
+): JobRunner {
   const runner = createJobRunner({
     dataSource,
     logger: createLogger('test', process.env.TEST_LOG_LEVEL ?? 'silent'),
-    handlers: importHandlers,
+    handlers: { ...importHandlers, ...handlers },
     workerName,
     pollSeconds: 0.1,
     heartbeatSeconds: 0.2,

@@ -7,21 +7,34 @@ import { ImportTaken } from './import-progress.ts';
 import { beginImport, cancelImport, failImport, type RunningImport } from './import-record.ts';
 import { importSpots } from './spot-import.ts';
 
-/** Reads an uploaded file under its mapping and stores what it says. */
-export const runImportJob: JobHandler<'import'> = async (context) => {
-  const record = await beginImport(context);
-  if (record === null) return;
-  try {
-    await read(context, record);
-  } catch (error) {
-    await explain(context, record, error);
-  }
-};
+export interface ImportLimits {
+  /** Nobody corrects more by hand: the mapping is wrong then. */
+  mostRefusals: number;
+}
 
-async function read(context: JobContext<'import'>, record: RunningImport): Promise<void> {
+/** Makes the handler that reads an uploaded file under its mapping and stores what it says. */
+export function createImportJob(limits: ImportLimits): JobHandler<'import'> {
+  return async (context) => {
+    const record = await beginImport(context);
+    if (record === null) return;
+    try {
+      await read(context, record, limits);
+    } catch (error) {
+      await explain(context, record, error);
+    }
+  };
+}
+
+export const runImportJob = createImportJob({ mostRefusals: 1_000_000 });
+
+async function read(
+  context: JobContext<'import'>,
+  record: RunningImport,
+  limits: ImportLimits,
+): Promise<void> {
   const reading = await loadReadingContext(context.dataSource.manager, record.stationId, Date.now());
   const { mapping } = record;
-  if (mapping.kind === 'spots') await importSpots(context, record, mapping, reading);
+  if (mapping.kind === 'spots') await importSpots(context, record, mapping, reading, limits.mostRefusals);
   else await importDwells(context, record, mapping, reading);
 }
 

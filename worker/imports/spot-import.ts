@@ -9,7 +9,7 @@ import {
   type SpotRow,
   type SpotRowReader,
 } from '../../shared/imports/spot-rows.ts';
-import { readImportFile } from '../../server/database/import-file.ts';
+import { readImportFile, UnreadableFile } from '../../server/database/import-file.ts';
 import { inTransaction } from '../../server/database/transaction.ts';
 import { enqueueJob } from '../../server/platform/job-queue.ts';
 import type { JobContext } from '../jobs/job-handler.ts';
@@ -20,8 +20,6 @@ import { copyRefusals, type LineRefusal } from './refusal-copy.ts';
 
 /** Rows of the file in one transaction: fastest at this size, and what a crash costs to read again. */
 const batchRows = 25_000;
-/** Nobody corrects more by hand: the mapping is wrong then. */
-export const mostRefusals = 1_000_000;
 
 interface Batch {
   rowsRead: number;
@@ -41,6 +39,7 @@ export async function importSpots(
   record: RunningImport,
   mapping: SpotMapping,
   reading: ReadingContext,
+  mostRefusals: number,
 ): Promise<void> {
   const { dataSource, signal } = context;
   let committed = { ...record.counts };
@@ -94,7 +93,7 @@ export async function importSpots(
       if (committed.rowsRefused > mostRefusals) break;
     }
   } finally {
-    // Also after a failure: what is under way ends before the job does.
+    // Also after a failure: what is under way ends before the job does, and is stored if it can be.
     await Promise.allSettled([writing]);
   }
   await writing;
@@ -151,13 +150,19 @@ async function* readBatches(
     return full;
   }
 
-  for await (const piece of readImportFile(context.dataSource, record)) {
-    context.signal.throwIfAborted();
-    for (const found of file.push(piece.bytes)) {
-      take(found);
-      if (batch.rowsRead >= batchRows) yield takeBatch();
+  try {
+    for await (const piece of readImportFile(context.dataSource, record)) {
+      context.signal.throwIfAborted();
+      for (const found of file.push(piece.bytes)) {
+        take(found);
+        if (batch.rowsRead >= batchRows) yield takeBatch();
+      }
+      share = piece.share;
     }
-    share = piece.share;
+  } catch (error) {
+    // What came before the damage is kept.
+    if (error instanceof UnreadableFile && batch.rowsRead > 0) yield takeBatch();
+    throw error;
   }
   for (const found of file.end()) take(found);
   // A file of a header alone says nothing wrong; one that lacks its columns does.
