@@ -1,7 +1,7 @@
 import fc from 'fast-check';
 import { describe, expect, it } from 'vitest';
 import { formatSpotLine } from '../fake-feed/spot-line.ts';
-import { createDayCounter, createSpotLineParser } from './spot-line.ts';
+import { createSpotLineParser } from './spot-line.ts';
 
 const parse = createSpotLineParser();
 const usual = 'DX de EI7QSA-#:  1824.5  EA8QSH       CW    21 dB  22 WPM  CQ      1812Z';
@@ -140,27 +140,5 @@ describe('the spot line parser', () => {
       }),
       { numRuns: 2_000 },
     );
-  });
-});
-
-describe('days of lines that carry only a clock', () => {
-  const days = (...minutes: number[]): string[] => {
-    const next = createDayCounter('2026-02-28');
-    return minutes.map((minute) => new Date(next(minute)).toISOString().slice(5, 16));
-  };
-
-  it('begin anew after midnight', () => {
-    expect(days(1438, 1439, 0, 1)).toEqual(['02-28T23:58', '02-28T23:59', '03-01T00:00', '03-01T00:01']);
-  });
-
-  it('do not turn for a line or two out of order, at midnight either', () => {
-    expect(days(1100, 1098, 1439, 0, 1439, 1)).toEqual([
-      '02-28T18:20',
-      '02-28T18:18',
-      '02-28T23:59',
-      '03-01T00:00',
-      '02-28T23:59',
-      '03-01T00:01',
-    ]);
   });
 });

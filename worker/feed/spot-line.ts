@@ -146,23 +146,3 @@ function readQuantity(
   if (!unit.test(written)) return null;
   return { value: Number(digits) + 0, unit: written, next: at + (glued === '' ? 2 : 1) };
 }
-
-const minuteMs = 60_000;
-const dayMinutes = 1440;
-
-/**
- * Gives the lines of a file, which carry only a clock, their days. A clock that goes back by more than
- * half a day has passed midnight; lines out of order by less than that stay on their day.
- */
-export function createDayCounter(firstDay: string): (minute: number) => number {
-  let dayMs = Date.parse(`${firstDay}T00:00:00Z`);
-  let last: number | null = null;
-  return (minute) => {
-    if (last !== null) {
-      if (last - minute > dayMinutes / 2) dayMs += dayMinutes * minuteMs;
-      else if (minute - last > dayMinutes / 2) dayMs -= dayMinutes * minuteMs;
-    }
-    last = minute;
-    return dayMs + minute * minuteMs;
-  };
-}
