@@ -1,5 +1,5 @@
 import { z } from 'zod';
-import { endpoint, id, instant, shortText } from './common.ts';
+import { callSignText, endpoint, id, instant, shortText } from './common.ts';
 import { role } from './permission.ts';
 
 export const email = z
@@ -173,7 +173,7 @@ export const setUp = endpoint({
     email,
     name: shortText(80),
     password: newPassword,
-    station: z.object({ name: shortText(80), callSign: shortText(12), locator: shortText(10) }),
+    station: z.object({ name: shortText(80), callSign: callSignText, locator: shortText(10) }),
   }),
   reply: signedIn,
 });

@@ -235,10 +235,11 @@ export const trial = z.object({
   updatedAt: instant,
 });
 export type Trial = z.infer<typeof trial>;
-const trialBody = z.object({
+/** Without defaults: a default in a change would overwrite what the change does not name. */
+const trialFields = z.object({
   name: z.string().trim().min(1, 'Give the trial a name.').max(80, 'Use at most 80 characters.'),
   question: comparisonQuestion,
-  notes: z.string().max(4000, 'Use at most 4000 characters.').default(''),
+  notes: z.string().max(4000, 'Use at most 4000 characters.'),
 });
 const trialParams = stationParams.extend({ trialId: id });
 export const listTrials = endpoint({
@@ -253,7 +254,7 @@ export const saveTrial = endpoint({
   path: '/stations/:stationId/trials',
   summary: 'Save a question as a trial',
   params: stationParams,
-  body: trialBody,
+  body: trialFields.extend({ notes: trialFields.shape.notes.default('') }),
   reply: trial,
   status: 201,
 });
@@ -269,7 +270,7 @@ export const updateTrial = endpoint({
   path: '/stations/:stationId/trials/:trialId',
   summary: 'Rename a trial or change its question',
   params: trialParams,
-  body: trialBody.partial(),
+  body: trialFields.partial(),
   reply: trial,
 });
 export const archiveTrial = endpoint({

@@ -12,11 +12,24 @@ import {
 } from './common.ts';
 import { role, tokenScope } from './permission.ts';
 
-export const blockMinutes = z.union([5, 10, 15, 20, 30, 60].map((n) => z.literal(n)));
+export const blockMinutesChoices = [5, 10, 15, 20, 30, 60];
+export const sectorCountChoices = [4, 6, 8, 12, 16, 18, 24, 36];
+const oneOf = (choices: number[]) =>
+  z.union(
+    choices.map((n) => z.literal(n)),
+    `Choose one of ${choices.join(', ')}.`,
+  );
+export const blockMinutes = oneOf(blockMinutesChoices);
 export const locatorText = z
   .string()
   .trim()
   .regex(/^[A-R]{2}([0-9]{2}([A-X]{2}([0-9]{2})?)?)?$/i, 'Give a Maidenhead locator such as IO53 or IO53kr.');
+
+/** A number in a range, with one sentence for every way to miss it. */
+const numberWithin = (from: number, to: number) => {
+  const sentence = `Give a number from ${from} to ${to}.`;
+  return z.number(sentence).min(from, sentence).max(to, sentence);
+};
 
 export const station = z.object({
   id,
@@ -54,13 +67,13 @@ export const updateStation = endpoint({
     callSign: callSignText.optional(),
     locator: locatorText.optional(),
     timeZone: shortText(60).optional(),
-    ituRegion: z.number().int().min(1).max(3).optional(),
-    guardSeconds: z.number().int().min(0).max(600).optional(),
+    ituRegion: numberWithin(1, 3).int('Give 1, 2 or 3.').optional(),
+    guardSeconds: numberWithin(0, 600).int('Give whole seconds.').optional(),
     blockMinutes: blockMinutes.optional(),
-    windowSeconds: z.number().int().min(1).max(300).optional(),
-    freqToleranceKhz: z.number().min(0).max(5).multipleOf(0.1).optional(),
-    marginDb: z.number().min(0.1).max(20).optional(),
-    sectorCount: z.union([4, 6, 8, 12, 16, 18, 24, 36].map((n) => z.literal(n))).optional(),
+    windowSeconds: numberWithin(1, 300).int('Give whole seconds.').optional(),
+    freqToleranceKhz: numberWithin(0, 5).multipleOf(0.1, 'Give a multiple of 0.1.').optional(),
+    marginDb: numberWithin(0.1, 20).optional(),
+    sectorCount: oneOf(sectorCountChoices).optional(),
   }),
   reply: station,
 });
@@ -73,7 +86,8 @@ export const receiver = z.object({
   retiredAt: instant.nullable(),
 });
 export type Receiver = z.infer<typeof receiver>;
-const receiverBody = z.object({ callSign: callSignText, label: shortText(40), notes: longText.default('') });
+/** Without defaults: a default in a change would overwrite what the change does not name. */
+const receiverFields = z.object({ callSign: callSignText, label: shortText(40), notes: longText });
 const receiverParams = stationParams.extend({ receiverId: id });
 export const listReceivers = endpoint({
   method: 'GET',
@@ -87,7 +101,7 @@ export const addReceiver = endpoint({
   path: '/stations/:stationId/receivers',
   summary: 'Add a receiver',
   params: stationParams,
-  body: receiverBody,
+  body: receiverFields.extend({ notes: longText.default('') }),
   reply: receiver,
   status: 201,
 });
@@ -96,7 +110,7 @@ export const updateReceiver = endpoint({
   path: '/stations/:stationId/receivers/:receiverId',
   summary: 'Rename, annotate, retire or bring back a receiver; its call sign stays once it has spots',
   params: receiverParams,
-  body: receiverBody.partial().extend({ retired: z.boolean().optional() }),
+  body: receiverFields.partial().extend({ retired: z.boolean().optional() }),
   reply: receiver,
 });
 
@@ -117,17 +131,33 @@ export const antenna = z.object({
   inServiceTo: day.nullable(),
 });
 export type Antenna = z.infer<typeof antenna>;
-const antennaBody = z.object({
+const antennaFields = z.object({
   name: shortText(40),
   marker: antennaMarker,
   kind: antennaKind,
-  headingDeg: z.number().min(0).lt(360).nullable().default(null),
-  beamwidthDeg: z.number().gt(0).max(360).nullable().default(null),
-  lengthM: z.number().gt(0).max(2000).nullable().default(null),
-  heightM: z.number().min(0).max(300).nullable().default(null),
-  notes: longText.default(''),
-  inServiceFrom: day.nullable().default(null),
-  inServiceTo: day.nullable().default(null),
+  headingDeg: z
+    .number('Give degrees clockwise from true north.')
+    .min(0, 'Give 0 or more degrees.')
+    .lt(360, 'Give less than 360 degrees; north is 0.')
+    .nullable(),
+  beamwidthDeg: z
+    .number('Give degrees.')
+    .gt(0, 'Give more than 0 degrees.')
+    .max(360, 'Give at most 360 degrees.')
+    .nullable(),
+  lengthM: z
+    .number('Give a length.')
+    .gt(0, 'Give more than 0.')
+    .max(2000, 'Give at most 2000 metres.')
+    .nullable(),
+  heightM: z
+    .number('Give a height.')
+    .min(0, 'Give 0 or more.')
+    .max(300, 'Give at most 300 metres.')
+    .nullable(),
+  notes: longText,
+  inServiceFrom: day.nullable(),
+  inServiceTo: day.nullable(),
 });
 const antennaParams = stationParams.extend({ antennaId: id });
 export const listAntennas = endpoint({
@@ -142,7 +172,15 @@ export const addAntenna = endpoint({
   path: '/stations/:stationId/antennas',
   summary: 'Add an antenna',
   params: stationParams,
-  body: antennaBody,
+  body: antennaFields.extend({
+    headingDeg: antennaFields.shape.headingDeg.default(null),
+    beamwidthDeg: antennaFields.shape.beamwidthDeg.default(null),
+    lengthM: antennaFields.shape.lengthM.default(null),
+    heightM: antennaFields.shape.heightM.default(null),
+    notes: longText.default(''),
+    inServiceFrom: antennaFields.shape.inServiceFrom.default(null),
+    inServiceTo: antennaFields.shape.inServiceTo.default(null),
+  }),
   reply: antenna,
   status: 201,
 });
@@ -151,7 +189,7 @@ export const updateAntenna = endpoint({
   path: '/stations/:stationId/antennas/:antennaId',
   summary: 'Change what is known of an antenna',
   params: antennaParams,
-  body: antennaBody.partial(),
+  body: antennaFields.partial(),
   reply: antenna,
 });
 export const removeAntenna = endpoint({
@@ -185,12 +223,13 @@ export const feed = z.object({
   health: feedHealth.nullable(),
 });
 export type Feed = z.infer<typeof feed>;
-const feedBody = z.object({
+const portSentence = 'Give a port from 1 to 65535.';
+const feedFields = z.object({
   name: shortText(40),
   host: shortText(253).regex(/^[A-Za-z0-9.:-]+$/, 'Give a host name or an IP address.'),
-  port: z.number().int().min(1).max(65535),
+  port: z.number(portSentence).int(portSentence).min(1, portSentence).max(65535, portSentence),
   loginCall: callSignText,
-  enabled: z.boolean().default(true),
+  enabled: z.boolean(),
 });
 const feedParams = stationParams.extend({ feedId: id });
 export const listFeeds = endpoint({
@@ -205,7 +244,7 @@ export const addFeed = endpoint({
   path: '/stations/:stationId/feeds',
   summary: 'Add a live feed; the worker connects within seconds',
   params: stationParams,
-  body: feedBody,
+  body: feedFields.extend({ enabled: z.boolean().default(true) }),
   reply: feed,
   status: 201,
 });
@@ -214,7 +253,7 @@ export const updateFeed = endpoint({
   path: '/stations/:stationId/feeds/:feedId',
   summary: 'Change or switch off a live feed',
   params: feedParams,
-  body: feedBody.partial(),
+  body: feedFields.partial(),
   reply: feed,
 });
 export const removeFeed = endpoint({
@@ -260,7 +299,7 @@ export const addPositionOverride = endpoint({
       .toUpperCase()
       .regex(/^[A-Z0-9/]{1,16}$/, 'Give a call sign or a prefix of letters and digits.'),
     locator: locatorText,
-    radiusKm: z.number().min(0).max(10000).default(50),
+    radiusKm: numberWithin(0, 10_000).default(50),
   }),
   reply: positionOverride,
   status: 201,
@@ -349,7 +388,7 @@ export const makeToken = endpoint({
   body: z.object({
     name: shortText(60),
     scopes: z.array(tokenScope).min(1, 'Choose at least one scope.'),
-    days: z.number().int().min(1).max(730).default(365),
+    days: numberWithin(1, 730).int('Give whole days.').default(365),
   }),
   reply: z.object({ token: apiToken, secret: z.string() }),
   status: 201,

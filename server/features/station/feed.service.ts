@@ -7,6 +7,7 @@ import { inTransaction } from '../../database/transaction.ts';
 import type { Deps } from '../../platform/deps.ts';
 import { InvalidRequest, NotFound } from '../../platform/errors.ts';
 import { wakeWorkers } from '../../platform/notify.ts';
+import { isOwnAddress } from '../../platform/own-address.ts';
 import { presentFeed } from './station.read-model.ts';
 
 type Audit = (manager: EntityManager, target: string, detail?: Record<string, unknown>) => Promise<void>;
@@ -15,14 +16,11 @@ type Audit = (manager: EntityManager, target: string, detail?: Record<string, un
  * Feeds make the worker open connections. Addresses of this machine and of link-local services are refused,
  * so that the form cannot be used to knock at what only the server can reach; the demo's own feed is exempt.
  */
-const forbiddenHost =
-  /^(localhost|.*\.localhost|0\.0\.0\.0|127\.|169\.254\.|\[?::1\]?$|\[?::\]?$|\[?fe80:|\[?::ffff:)/i;
-
 export function createFeedService(deps: Deps) {
   const { dataSource } = deps;
 
   function checkHost(host: string | undefined): void {
-    if (host !== undefined && !deps.config.demo && forbiddenHost.test(host)) {
+    if (host !== undefined && !deps.config.demo && isOwnAddress(host)) {
       throw new InvalidRequest('Some fields have to change.', [
         {
           path: 'body.host',

@@ -1,10 +1,12 @@
 import type { EntityManager } from 'typeorm';
 import type { BodyOf } from '../../../shared/contracts/endpoint.ts';
 import type { addPositionOverride } from '../../../shared/contracts/station.ts';
+import { parseLocator } from '../../../shared/radio/locator.ts';
+import { isRefusal } from '../../../shared/radio/place.ts';
 import { PositionOverride } from '../../database/entities/position-override.ts';
 import { inTransaction, isUniqueViolation } from '../../database/transaction.ts';
 import type { Deps } from '../../platform/deps.ts';
-import { Conflict, NotFound } from '../../platform/errors.ts';
+import { Conflict, InvalidRequest, NotFound } from '../../platform/errors.ts';
 import { enqueueJob } from '../../platform/job-queue.ts';
 import { presentPosition } from './position.read-model.ts';
 
@@ -19,10 +21,19 @@ export function createPositionService(deps: Deps) {
       createdBy: string | null,
       audit: Audit,
     ) {
+      const cell = parseLocator(body.locator);
+      if (isRefusal(cell)) {
+        throw new InvalidRequest('Some fields have to change.', [
+          { path: 'body.locator', message: cell.reason },
+        ]);
+      }
+      const { locator } = cell;
       try {
         return await inTransaction(deps.dataSource, async (manager) => {
-          const row = await manager.save(manager.create(PositionOverride, { stationId, ...body, createdBy }));
-          await audit(manager, `${body.matches} ${body.pattern}`, { locator: body.locator });
+          const row = await manager.save(
+            manager.create(PositionOverride, { stationId, ...body, locator, createdBy }),
+          );
+          await audit(manager, `${body.matches} ${body.pattern}`, { locator });
           await enqueueJob(manager, stationId, 'bearings', {}, createdBy);
           return presentPosition(row);
         });

@@ -40,13 +40,15 @@ export function createStationService(deps: Deps) {
         const { freqToleranceKhz, locator, timeZone, ituRegion, ...rest } = body;
         const change: Partial<Station> = { ...rest };
         if (freqToleranceKhz !== undefined) change.freqTolerance100hz = Math.round(freqToleranceKhz * 10);
-        if (locator !== undefined) Object.assign(change, placeOrRefuse(locator));
+        // The same place again must not undo a time zone or region that the manager has set.
+        const place = locator === undefined ? null : placeOrRefuse(locator);
+        if (place && place.locator !== station.locator) Object.assign(change, place);
         if (timeZone !== undefined) change.timeZone = knownZone(timeZone);
         if (ituRegion !== undefined) change.ituRegion = ituRegion;
         if (Object.keys(change).length > 0) await manager.update(Station, { id: stationId }, change);
         await audit(manager, String(stationId), body);
 
-        const moved = change.latitudeDeg !== undefined && change.locator !== station.locator;
+        const moved = change.latitudeDeg !== undefined;
         const changed = (key: 'guardSeconds' | 'blockMinutes' | 'windowSeconds' | 'freqTolerance100hz') =>
           change[key] !== undefined && change[key] !== station[key];
         const rulesChanged =
