@@ -15,6 +15,8 @@ const limits: Record<Exclude<RateLimitName, 'none'>, { points: number; seconds: 
   mail: { points: 10, seconds: 3600 },
   'secret-link': { points: 30, seconds: 900 },
   refresh: { points: 300, seconds: 900 },
+  invite: { points: 40, seconds: 3600 },
+  'make-token': { points: 40, seconds: 3600 },
 };
 const signInTries = { points: 6, seconds: 900 };
 
@@ -47,10 +49,10 @@ export function createRateLimits(dataSource: DataSource) {
   }
 
   return {
-    /** Counts one call of a public route against the caller's address. */
-    async count(name: RateLimitName, req: Request): Promise<void> {
+    /** Counts one call against the caller's address or, of somebody who is signed in, against that person. */
+    async count(name: RateLimitName, req: Request, userId?: string | null): Promise<void> {
       const limiter = byName.get(name);
-      if (limiter) await spend(limiter, callerOf(req));
+      if (limiter) await spend(limiter, userId ?? callerOf(req));
     },
     /** Called before the password is checked, so that guesses cannot run in parallel past the limit. */
     async countSignIn(req: Request, email: string): Promise<void> {
@@ -64,8 +66,25 @@ export function createRateLimits(dataSource: DataSource) {
 
 export type RateLimits = ReturnType<typeof createRateLimits>;
 
-/** IPv6 callers own a whole /64: count by it, or the limit could be walked round address by address. */
 function callerOf(req: Request): string {
-  const ip = req.ip ?? 'unknown';
-  return ip.includes(':') && !ip.startsWith('::ffff:') ? ip.split(':').slice(0, 4).join(':') : ip;
+  return callerAddress(req.ip ?? 'unknown');
+}
+
+/**
+ * IPv6 callers own a whole /64: counted by it, or the limit could be walked round address by address. The
+ * groups are written out first, because `::` may stand for some of the network's half.
+ */
+export function callerAddress(ip: string): string {
+  const mapped = /^::ffff:(\d+\.\d+\.\d+\.\d+)$/i.exec(ip);
+  if (mapped?.[1]) return mapped[1];
+  if (!ip.includes(':')) return ip;
+  const [head = '', tail] = ip.split('%')[0]!.toLowerCase().split('::');
+  const left = head ? head.split(':') : [];
+  const right = tail ? tail.split(':') : [];
+  const zeros = tail === undefined ? 0 : Math.max(0, 8 - left.length - right.length);
+  const groups = [...left, ...Array<string>(zeros).fill('0'), ...right];
+  return groups
+    .slice(0, 4)
+    .map((group) => group.replace(/^0+(?=.)/, ''))
+    .join(':');
 }

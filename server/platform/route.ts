@@ -11,7 +11,8 @@ export type Access =
   | { kind: 'station'; permission: Permission; tokenScope?: TokenScope };
 
 /** `none`: health checks, which must answer when the counters' database does not. */
-export type RateLimitName = 'none' | 'open' | 'sign-in' | 'mail' | 'secret-link' | 'refresh';
+export type RateLimitName =
+  'none' | 'open' | 'sign-in' | 'mail' | 'secret-link' | 'refresh' | 'invite' | 'make-token';
 
 /** Anybody, within a rate limit. */
 export const anybody = (limit: RateLimitName = 'open'): Access => ({ kind: 'public', limit });

@@ -48,14 +48,27 @@ export function onSignedIn(listener: (signedIn: SignedIn) => void): () => void {
  * Rejects with status 401 when nobody is signed in.
  */
 export function refreshAccess(): Promise<SignedIn> {
-  refreshing ??= underLock(askForAccess).finally(() => (refreshing = null));
+  refreshing ??= underLock(askUntilDecided).finally(() => (refreshing = null));
   return refreshing;
 }
 
 async function underLock<T>(work: () => Promise<T>): Promise<T> {
-  // Browsers have no locks on plain HTTP outside loopback; there each tab takes its own chance.
+  // Browsers have no locks on plain HTTP outside loopback; there `askUntilDecided` sorts the tabs out.
   const locks = typeof navigator === 'undefined' ? undefined : navigator.locks;
   return locks ? await locks.request('whichwire-refresh', work) : await work();
+}
+
+/** Another tab presented the same cookie a moment earlier: its answer brings this tab the next cookie. */
+async function askUntilDecided(): Promise<SignedIn> {
+  for (let pauseMs = 100; ; pauseMs *= 2) {
+    try {
+      return await askForAccess();
+    } catch (error) {
+      const isRace = error instanceof ApiProblem && error.code === 'refresh-raced';
+      if (!isRace || pauseMs > 2000) throw error;
+      await new Promise((resolve) => setTimeout(resolve, pauseMs));
+    }
+  }
 }
 
 async function askForAccess(): Promise<SignedIn> {

@@ -61,6 +61,60 @@ export interface TestApi {
 export const testPassword = 'a password for tests';
 let passwordHash: Promise<string> | null = null;
 
+/** Real HTTP to a server of the API; the reply is parsed as JSON where it is JSON. */
+export async function callApi<E extends Endpoint>(
+  url: string,
+  endpoint: E,
+  options: CallOptions<E> = {},
+): Promise<TestReply> {
+  const path = endpoint.path.replace(/:(\w+)/g, (_all, name: string) =>
+    encodeURIComponent(String(options.params?.[name] ?? `:${name}`)),
+  );
+  const search = new URLSearchParams();
+  for (const [key, value] of Object.entries(options.query ?? {})) {
+    if (value !== undefined) search.set(key, String(value));
+  }
+  const isForm = options.body instanceof FormData;
+  const response = await fetch(`${url}/api${path}${search.size > 0 ? `?${search}` : ''}`, {
+    method: endpoint.method,
+    headers: {
+      ...(options.token ? { authorization: `Bearer ${options.token}` } : {}),
+      ...(options.cookie ? { cookie: options.cookie } : {}),
+      ...(options.body !== undefined && !isForm ? { 'content-type': 'application/json' } : {}),
+      ...options.headers,
+    },
+    body:
+      options.body === undefined
+        ? undefined
+        : isForm
+          ? (options.body as FormData)
+          : JSON.stringify(options.body),
+  });
+  const text = await response.text();
+  const isJson = /json/.test(response.headers.get('content-type') ?? '');
+  return {
+    status: response.status,
+    headers: response.headers,
+    text,
+    body: isJson ? JSON.parse(text) : undefined,
+  };
+}
+
+/** One server process more over the same database and the like; `startTestApi` starts the first. */
+export async function startServer(deps: Deps): Promise<{ url: string; stop: () => Promise<void> }> {
+  const server = createServer(createApp(deps));
+  server.listen(0, '127.0.0.1');
+  await once(server, 'listening');
+  return {
+    url: `http://127.0.0.1:${(server.address() as AddressInfo).port}`,
+    async stop() {
+      const closed = new Promise((resolve) => server.close(resolve));
+      server.closeAllConnections();
+      await closed;
+    },
+  };
+}
+
 /** The whole API on a free loopback port over a database of its own; only e-mail is a local fake. */
 export async function startTestApi(config: Partial<Config> = {}): Promise<TestApi> {
   const database = await createTestDatabase();
@@ -96,10 +150,7 @@ export async function startTestApi(config: Partial<Config> = {}): Promise<TestAp
     rateLimits: createRateLimits(dataSource),
     now: Date.now,
   };
-  const server = createServer(createApp(deps));
-  server.listen(0, '127.0.0.1');
-  await once(server, 'listening');
-  const url = `http://127.0.0.1:${(server.address() as AddressInfo).port}`;
+  const { url, stop } = await startServer(deps);
   let people = 0;
 
   const api: TestApi = {
@@ -110,39 +161,7 @@ export async function startTestApi(config: Partial<Config> = {}): Promise<TestAp
     deps,
     routes: apiRoutes(deps),
 
-    async call(endpoint, options = {}) {
-      const path = endpoint.path.replace(/:(\w+)/g, (_all, name: string) =>
-        encodeURIComponent(String(options.params?.[name] ?? `:${name}`)),
-      );
-      const search = new URLSearchParams();
-      for (const [key, value] of Object.entries(options.query ?? {})) {
-        if (value !== undefined) search.set(key, String(value));
-      }
-      const isForm = options.body instanceof FormData;
-      const response = await fetch(`${url}/api${path}${search.size > 0 ? `?${search}` : ''}`, {
-        method: endpoint.method,
-        headers: {
-          ...(options.token ? { authorization: `Bearer ${options.token}` } : {}),
-          ...(options.cookie ? { cookie: options.cookie } : {}),
-          ...(options.body !== undefined && !isForm ? { 'content-type': 'application/json' } : {}),
-          ...options.headers,
-        },
-        body:
-          options.body === undefined
-            ? undefined
-            : isForm
-              ? (options.body as FormData)
-              : JSON.stringify(options.body),
-      });
-      const text = await response.text();
-      const isJson = /json/.test(response.headers.get('content-type') ?? '');
-      return {
-        status: response.status,
-        headers: response.headers,
-        text,
-        body: isJson ? JSON.parse(text) : undefined,
-      };
-    },
+    call: (endpoint, options) => callApi(url, endpoint, options),
 
     async addPerson(stationId, role, email) {
       people += 1;
@@ -167,9 +186,7 @@ export async function startTestApi(config: Partial<Config> = {}): Promise<TestAp
     },
 
     async close() {
-      const closed = new Promise((resolve) => server.close(resolve));
-      server.closeAllConnections();
-      await closed;
+      await stop();
       await eventHub.stop();
       await mailer.drain();
       await mailbox.close();

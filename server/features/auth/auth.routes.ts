@@ -40,8 +40,9 @@ export function authRoutes(deps: Deps): Route[] {
             );
             await manager.query(
               `INSERT INTO audit_entry (user_id, action, target, detail, request_id)
-               VALUES ($1, 'auth.refresh-reuse', $1, $2, $3)`,
-              [userId, JSON.stringify(detail ?? {}), requestId],
+               VALUES ($1, 'auth.refresh-reuse', $2, $3, $4)`,
+              // Twice: the column of the target is text, and PostgreSQL gives one parameter one type.
+              [userId, userId, JSON.stringify(detail ?? {}), requestId],
             );
           }),
         );

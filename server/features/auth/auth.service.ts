@@ -1,3 +1,4 @@
+import { IsNull } from 'typeorm';
 import type { EntityManager } from 'typeorm';
 import type { SignedIn } from '../../../shared/contracts/auth.ts';
 
@@ -5,7 +6,7 @@ import { Invitation } from '../../database/entities/invitation.ts';
 import { Membership } from '../../database/entities/membership.ts';
 import { PasswordReset } from '../../database/entities/password-reset.ts';
 import { Station } from '../../database/entities/station.ts';
-import { inTransaction } from '../../database/transaction.ts';
+import { inTransaction, isUniqueViolation } from '../../database/transaction.ts';
 import { accessTokenSeconds, signAccessToken } from '../../middleware/authenticate.ts';
 import type { Deps } from '../../platform/deps.ts';
 import { Conflict, InvalidRequest, NotFound, NotSignedIn } from '../../platform/errors.ts';
@@ -73,15 +74,16 @@ export function createAuthService(deps: Deps) {
         return entryFor(manager, rotation.userId, rotation.sessionId, rotation.token);
       });
       if ('reply' in outcome) return outcome;
+      if (outcome.kind === 'raced') {
+        throw new Conflict('Another tab asked at the same moment. Try again.', [], 'refresh-raced');
+      }
       throw new NotSignedIn('This session has ended. Sign in again.', 'session-ended');
     },
 
     async signOut(token: string | null): Promise<void> {
       if (!token) return;
       await inTransaction(dataSource, async (manager) => {
-        const rotation = await sessionRepository.rotate(manager, token);
-        if (rotation.kind === 'rotated')
-          await sessionRepository.revoke(manager, { id: rotation.sessionId }, 'signed out');
+        await sessionRepository.endByToken(manager, token, 'signed out');
       });
     },
 
@@ -120,9 +122,7 @@ export function createAuthService(deps: Deps) {
             'link-spent',
           );
         }
-        await manager.update(PasswordReset, { tokenHash: reset.tokenHash }, { usedAt: new Date() });
-        await userRepository.setPassword(manager, reset.userId, passwordHash);
-        await sessionRepository.revoke(manager, { userId: reset.userId }, 'password reset');
+        await setPassword(manager, reset.userId, passwordHash, 'password reset');
         await audit(manager, reset.userId);
       });
     },
@@ -170,7 +170,7 @@ export function createAuthService(deps: Deps) {
         ]);
       }
       const passwordHash = known ? '' : await hashPassword(given.password);
-      return inTransaction(dataSource, async (manager) => {
+      const joining = inTransaction(dataSource, async (manager) => {
         const invitation = await openInvitation(manager, given.token, true);
         const user =
           known ??
@@ -197,6 +197,13 @@ export function createAuthService(deps: Deps) {
         await audit(manager, user.id, { role: invitation.role }, invitation.stationId);
         return enter(manager, user.id, userAgent);
       });
+      try {
+        return await joining;
+      } catch (error) {
+        // Two stations invited the same new person, who accepted both at once.
+        if (!isUniqueViolation(error)) throw error;
+        throw new Conflict('Your account has just been made. Open the link again and give its password.');
+      }
     },
 
     /** The first person of a fresh installation; refused as soon as any account exists. */
@@ -265,13 +272,24 @@ export function createAuthService(deps: Deps) {
       }
       const passwordHash = await hashPassword(given.next);
       return inTransaction(dataSource, async (manager) => {
-        await userRepository.setPassword(manager, user.id, passwordHash);
-        await sessionRepository.revoke(manager, { userId: user.id }, 'password changed');
+        await setPassword(manager, user.id, passwordHash, 'password changed');
         await audit(manager, user.id);
         return enter(manager, user.id, userAgent);
       });
     },
   };
+}
+
+/** With the old password go the sessions that it opened, and every reset link that is still about. */
+async function setPassword(
+  manager: EntityManager,
+  userId: string,
+  passwordHash: string,
+  reason: string,
+): Promise<void> {
+  await userRepository.setPassword(manager, userId, passwordHash);
+  await manager.update(PasswordReset, { userId, usedAt: IsNull() }, { usedAt: new Date() });
+  await sessionRepository.revoke(manager, { userId }, reason);
 }
 
 async function openInvitation(manager: EntityManager, token: string, lock = false): Promise<Invitation> {

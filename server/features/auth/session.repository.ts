@@ -4,11 +4,22 @@ import { Session } from '../../database/entities/session.ts';
 import { hashSecret, makeSecret } from '../../platform/secret.ts';
 
 export const sessionDays = 30;
+/**
+ * Two tabs of one browser may present the same cookie at the same moment (browsers without locks between
+ * tabs: plain HTTP on a LAN). The later one gets nothing but the advice to try again with the cookie that
+ * the earlier one brought. A thief who is that quick gets nothing either, and the owner's next try, with the
+ * cookie that the thief used up, ends the session.
+ */
+export const simultaneousSeconds = 10;
 
-/** Outcome of presenting a refresh token. `reused`: it was exchanged before, so somebody has a copy. */
+/**
+ * Outcome of presenting a refresh token. `reused`: it was exchanged before, so somebody has a copy.
+ * `raced`: it was exchanged a moment ago.
+ */
 export type Rotation =
   | { kind: 'rotated'; userId: string; sessionId: string; token: string }
   | { kind: 'reused'; userId: string; sessionId: string }
+  | { kind: 'raced' }
   | { kind: 'refused' };
 
 /** Sessions and the chain of refresh tokens that belongs to each. */
@@ -25,7 +36,7 @@ export const sessionRepository = {
     return { sessionId: session.id, token: await addToken(manager, session.id, expiresAt) };
   },
 
-  /** Runs in a transaction: the row lock lets one of two simultaneous exchanges win; the other is a reuse. */
+  /** Runs in a transaction: the row lock lets one of two simultaneous exchanges win. */
   async rotate(manager: EntityManager, token: string): Promise<Rotation> {
     const found = await manager.findOne(RefreshToken, {
       where: { tokenHash: hashSecret(token) },
@@ -35,6 +46,7 @@ export const sessionRepository = {
     const session = await manager.findOneByOrFail(Session, { id: found.sessionId });
     if (session.revokedAt || session.expiresAt.getTime() <= Date.now()) return { kind: 'refused' };
     if (found.usedAt) {
+      if (Date.now() - found.usedAt.getTime() < simultaneousSeconds * 1000) return { kind: 'raced' };
       await this.revoke(manager, { id: session.id }, 'refresh token used twice');
       return { kind: 'reused', userId: session.userId, sessionId: session.id };
     }
@@ -47,6 +59,12 @@ export const sessionRepository = {
       sessionId: session.id,
       token: await addToken(manager, session.id, session.expiresAt),
     };
+  },
+
+  /** Ends the session of a refresh token, used or not: whoever holds one may sign out. */
+  async endByToken(manager: EntityManager, token: string, reason: string): Promise<void> {
+    const found = await manager.findOneBy(RefreshToken, { tokenHash: hashSecret(token) });
+    if (found) await this.revoke(manager, { id: found.sessionId }, reason);
   },
 
   async revoke(

@@ -17,7 +17,10 @@ export function memberRoutes(deps: Deps): Route[] {
     route(
       contract.inviteMember,
       { access: manage, audit: 'member.invite' },
-      async ({ params, body, actor, audit }) => service.invite(params.stationId, actor.userId, body, audit),
+      async ({ params, body, actor, req, audit }) => {
+        await deps.rateLimits.count('invite', req, actor.userId);
+        return service.invite(params.stationId, actor.userId, body, audit);
+      },
     ),
     route(
       contract.withdrawInvitation,

@@ -18,21 +18,26 @@ export function tokenRoutes(deps: Deps): Route[] {
     route(contract.listTokens, { access }, async ({ params }) => ({
       items: (await tokenRepository.list(deps.dataSource.manager, params.stationId)).map(present),
     })),
-    route(contract.makeToken, { access, audit: 'token.make' }, async ({ params, body, actor, audit }) => {
-      const secret = makeSecret(apiTokenPrefix);
-      return inTransaction(deps.dataSource, async (manager) => {
-        const token = await tokenRepository.add(manager, {
-          stationId: params.stationId,
-          name: body.name,
-          scopes: body.scopes,
-          tokenHash: hashSecret(secret),
-          createdBy: actor.userId,
-          expiresAt: new Date(Date.now() + body.days * 86_400_000),
+    route(
+      contract.makeToken,
+      { access, audit: 'token.make' },
+      async ({ params, body, actor, req, audit }) => {
+        await deps.rateLimits.count('make-token', req, actor.userId);
+        const secret = makeSecret(apiTokenPrefix);
+        return inTransaction(deps.dataSource, async (manager) => {
+          const token = await tokenRepository.add(manager, {
+            stationId: params.stationId,
+            name: body.name,
+            scopes: body.scopes,
+            tokenHash: hashSecret(secret),
+            createdBy: actor.userId,
+            expiresAt: new Date(Date.now() + body.days * 86_400_000),
+          });
+          await audit(manager, token.id, { name: body.name, scopes: body.scopes });
+          return { token: present(token), secret };
         });
-        await audit(manager, token.id, { name: body.name, scopes: body.scopes });
-        return { token: present(token), secret };
-      });
-    }),
+      },
+    ),
     route(contract.revokeToken, { access, audit: 'token.revoke' }, async ({ params, audit }) =>
       inTransaction(deps.dataSource, async (manager) => {
         if (!(await tokenRepository.revoke(manager, params.stationId, params.tokenId)))
