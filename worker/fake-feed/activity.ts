@@ -28,12 +28,16 @@ export interface Run {
 const knotMs = 30 * 60_000;
 const minuteMs = 60_000;
 /** Runs on the air in an average night, sized so that three receivers report some 30,000 spots. */
-const runsPerNight = 930;
+const runsPerNight = 1300;
 /**
  * A path whose median level is this gets half of its stations on the air, dB: people call where they expect
  * to be heard, well above the threshold at which the last receiver just decodes them.
  */
 const workableLevelDb = 17;
+
+/** Somebody trying with low power, or gone after a call or two: most of whom one antenna hears alone. */
+const briefShare = 0.3;
+const briefLossDb = 8;
 
 const cwSegmentsKhz: ReadonlyMap<BandMetres, readonly [number, number]> = new Map([
   [160, [1810.5, 1838]],
@@ -146,7 +150,9 @@ export function createActivity(options: ActivityOptions): (nightIndex: number) =
         for (let n = 0; n < count; n++) {
           const knot = drawIndex(random, opening.weights, opening.total);
           const fromMs = Math.round(startMs + (knot + random.uniform()) * knotMs);
-          const lengthMs = Math.round(Math.min(60, 10 + 18 * random.exponential()) * minuteMs);
+          const isBrief = random.uniform() < briefShare;
+          const minutes = isBrief ? 1 + 4 * random.uniform() : Math.min(60, 10 + 18 * random.exponential());
+          const lengthMs = Math.round(minutes * minuteMs);
           drafts.push({
             station,
             bandMetres: opening.bandMetres,
@@ -159,7 +165,7 @@ export function createActivity(options: ActivityOptions): (nightIndex: number) =
             number: 0,
             levelsDb:
               options.fixedLevelDb === undefined
-                ? opening.levelsDb
+                ? opening.levelsDb.map((levelDb) => levelDb - (isBrief ? briefLossDb : 0))
                 : new Float64Array(knots.length).fill(options.fixedLevelDb + station.strengthDb / 2),
             levelsFromMs: startMs,
           });
