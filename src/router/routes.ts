@@ -32,10 +32,29 @@ export interface StationPage {
  */
 export const stationPages: readonly StationPage[] = [
   {
+    name: 'tonight',
+    word: 'Tonight',
+    permission: 'station:read',
+    view: () => import('../views/TonightView.vue'),
+  },
+  {
     name: 'compare',
     word: 'Compare',
     permission: 'comparison:read',
     view: () => import('../views/CompareView.vue'),
+  },
+  {
+    name: 'switching',
+    word: 'Switching',
+    permission: 'dwell:read',
+    view: () => import('../views/SwitchingView.vue'),
+  },
+  { name: 'spots', word: 'Spots', permission: 'spot:read', view: () => import('../views/SpotsView.vue') },
+  {
+    name: 'imports',
+    word: 'Imports',
+    permission: 'import:read',
+    view: () => import('../views/ImportsView.vue'),
   },
   {
     name: 'settings',
@@ -99,6 +118,12 @@ export const routes: RouteRecordRaw[] = [
         name: 'trials',
         component: () => import('../views/TrialsView.vue'),
         meta: { title: 'Trials', permission: 'trial:read' },
+      },
+      {
+        path: String.raw`imports/:importId(\d+)`,
+        name: 'import',
+        component: () => import('../views/ImportView.vue'),
+        meta: { title: 'Import', permission: 'import:read' },
       },
     ],
   },
