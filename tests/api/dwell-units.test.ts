@@ -122,7 +122,7 @@ describe('units after a correction of the switch log', () => {
           if (JSON.stringify(before) !== JSON.stringify(followed)) changed++;
         },
       ),
-      { numRuns: 12, seed: 42 },
+      { numRuns: 12, seed: 42, endOnFailure: true },
     );
     expect(changed).toBeGreaterThan(6);
   });

@@ -1,11 +1,10 @@
 import { afterAll, beforeAll, describe, expect, it } from 'vitest';
 import fc from 'fast-check';
-import { countSpots, listSpots, mapSpots } from '../../shared/contracts/spot.ts';
+import { listSpots, mapSpots } from '../../shared/contracts/spot.ts';
 import type { SpotRow } from '../../shared/contracts/spot.ts';
 import type { QueryInput } from '../../shared/contracts/endpoint.ts';
 import { Membership } from '../../server/database/entities/membership.ts';
 import { listSpotPage } from '../../server/features/spots/spot-list.read-model.ts';
-import { scanStatement } from '../../server/features/spots/spot-scan.ts';
 import { startTestApi } from '../helpers/api.ts';
 import type { TestApi } from '../helpers/api.ts';
 import { insertDwells, insertLogStation, insertSpots, readTags } from '../helpers/switch-log-rows.ts';
@@ -274,8 +273,37 @@ describe('the list of spots', () => {
           expect(found).toEqual(expected);
         },
       ),
-      { numRuns: 60, seed: 1130 },
+      { numRuns: 60, seed: 1130, endOnFailure: true },
     );
+  });
+
+  it('goes straight to old gaps and old antennas, wherever the filter may start', async () => {
+    const day = 86_400_000;
+    const clock = (days: number) => ms('18:00:00') + days * day;
+    const { stationId, receiverIds, verticalId } = await makeStation(
+      ({ receiverIds: [b], antennaIds: [northEast], verticalId: vertical }) => [
+        { receiverId: b, antennaId: vertical, startMs: clock(0), endMs: clock(1) },
+        { receiverId: b, antennaId: vertical, startMs: clock(2), endMs: clock(3) },
+        { receiverId: b, antennaId: northEast, startMs: clock(3), endMs: clock(60) },
+        { receiverId: b, antennaId: northEast, startMs: clock(61), endMs: null },
+      ],
+      ({ receiverIds: [b] }) =>
+        [-1, 0.5, 1.5, 2.5, 30, 60.5, 70, 200].map((days) => ({ receiverId: b, timeMs: clock(days) })),
+    );
+    const daysOf = (items: SpotRow[]) => items.map((row) => (Date.parse(row.heardAt) - clock(0)) / day);
+    for (const [to, gaps, onVertical] of [
+      [undefined, [60.5, 1.5, -1], [2.5, 0.5]],
+      [60.25, [1.5, -1], [2.5, 0.5]],
+      [2, [1.5, -1], [0.5]],
+      [0.25, [-1], []],
+    ] as const) {
+      const range = to === undefined ? {} : { to: new Date(clock(to)).toISOString() };
+      const label = `until day ${to}`;
+      const untagged = await list(stationId, { ...range, tag: 'untagged', receiverId: receiverIds[0] });
+      expect(daysOf(untagged.items), label).toEqual(gaps);
+      const vertical = await list(stationId, { ...range, antennaId: verticalId });
+      expect(daysOf(vertical.items), label).toEqual(onVertical);
+    }
   });
 
   it('refuses a turned range and a cursor that is none', async () => {
@@ -300,98 +328,5 @@ describe('the list of spots', () => {
     expect((await list(own.stationId, { receiverId: other.receiverIds[0] })).status).toBe(404);
     expect((await list(own.stationId, { antennaId: other.verticalId })).status).toBe(404);
     expect((await list(other.stationId)).status).toBe(404);
-  });
-});
-
-describe('reading a range of many months', () => {
-  interface Plan {
-    'Node Type': string;
-    'Relation Name'?: string;
-    Plans?: Plan[];
-  }
-  const nodes = (plan: Plan): Plan[] => [plan, ...(plan.Plans ?? []).flatMap(nodes)];
-
-  it('walks the index backward through the months of the range only, without scan or sort', async () => {
-    const { stationId, receiverIds } = await makeStation(
-      () => [],
-      ({ receiverIds: [b] }) => [{ receiverId: b, timeMs: ms('18:00:00') }],
-    );
-    const [month, later] = [Date.UTC(2025, 9), Date.UTC(2026, 2)];
-    await api.dataSource.query('SELECT ensure_spot_partitions($1, $2)', [new Date(month), new Date(later)]);
-    await api.dataSource.query(
-      `INSERT INTO spot (station_id, heard_at, heard_ms, receiver_id, call_id, freq_100hz, import_id, band_m, snr_db, mode, uncertainty_s)
-       SELECT $1, $3::timestamptz + n * interval '10 minutes', 0, $2, (SELECT min(id) FROM call_sign), 18100, 0, 160, 10, 1, 0
-       FROM generate_series(0, 21000) AS n`,
-      [stationId, receiverIds[0], new Date(month)],
-    );
-    await api.dataSource.query('ANALYZE spot');
-    const explain = async (fromMs: number, toMs: number, limit: number) => {
-      const below = { second: toMs / 1000, receiverId: 0, callId: 0, freq100Hz: 0 };
-      const { sql, values } = scanStatement(stationId, { fromMs, toMs }, fromMs, below, limit);
-      const [row] = (await api.dataSource.query(`EXPLAIN (FORMAT JSON) ${sql}`, values)) as {
-        'QUERY PLAN': { Plan: Plan }[];
-      }[];
-      return nodes(row!['QUERY PLAN'][0]!.Plan);
-    };
-    const december = await explain(Date.UTC(2025, 11, 5), Date.UTC(2025, 11, 20), 100);
-    expect(december.map((node) => node['Relation Name']).filter(Boolean)).toEqual(['spot_2025_12']);
-    const season = await explain(month, later, 100);
-    expect(season.filter((node) => node['Relation Name'])).toHaveLength(6);
-    for (const node of [...december, ...season]) {
-      expect(['Limit', 'Append', 'Index Scan']).toContain(node['Node Type']);
-    }
-  });
-
-  it('counts nights from what has been made, and counts itself only what has changed since', async () => {
-    // Made under older rules too; the newest count of a night is the one that holds.
-    const { stationId } = await makeStation(
-      () => [],
-      ({ receiverIds: [b] }) =>
-        // Solar noon at 9 degrees west is 12:36 UTC: the first of the two belongs to the night before.
-        ['12:35:59', '12:36:00', '23:00:00'].map((clock) => ({ receiverId: b, timeMs: ms(clock) })),
-    );
-    const summary = async () =>
-      (await api.call(countSpots, { params: { stationId }, token: person.token })).body;
-    const insertNight = (night: string, key: string, spots: number, age: string) =>
-      api.dataSource.query(
-        `INSERT INTO unit_night (station_id, rules_key, night, spots, tally, made_at) VALUES ($1, $2, $3, $4, '{}', now() - $5::interval)`,
-        [stationId, key, night, spots, age],
-      );
-    await insertNight('2026-11-28', 'b15.w30.f3.g20', 41, '1 hour');
-    await insertNight('2026-11-28', 'b15.w30.f3.g30', 40, '1 day');
-    await insertNight('2026-11-30', 'b15.w30.f3.g20', 1, '1 hour');
-    const extent = { firstAt: '2026-11-30T12:35:59.000Z', lastAt: '2026-11-30T23:00:00.000Z' };
-    expect(await summary()).toEqual({
-      ...extent,
-      nights: [
-        { night: '2026-11-28', spots: 41 },
-        { night: '2026-11-30', spots: 1 },
-      ],
-      total: 42,
-    });
-    // Marked in the hour in which one night ends and the next begins: both are counted.
-    await api.dataSource.query(`INSERT INTO dirty_block (station_id, starts_at) VALUES ($1, $2)`, [
-      stationId,
-      at('12:00:00'),
-    ]);
-    expect(await summary()).toEqual({
-      ...extent,
-      nights: [
-        { night: '2026-11-28', spots: 41 },
-        { night: '2026-11-29', spots: 1 },
-        { night: '2026-11-30', spots: 2 },
-      ],
-      total: 44,
-    });
-  });
-
-  it('says that a station without spots has none', async () => {
-    const { stationId } = await makeStation(
-      () => [],
-      () => [],
-    );
-    expect((await api.call(countSpots, { params: { stationId }, token: person.token })).body).toEqual({
-      ...{ nights: [], total: 0, firstAt: null, lastAt: null },
-    });
   });
 });
