@@ -18,6 +18,7 @@ import { enqueueJob } from '../../platform/job-queue.ts';
 import type { Actor } from '../../platform/route.ts';
 import { listReceivers, readStation } from '../station/station.read-model.ts';
 import * as read from './comparison.read-model.ts';
+import { unknownIds } from './question-ids.read-model.ts';
 
 type Pending = z.input<typeof comparisonPending>;
 export interface Prepared {
@@ -36,13 +37,13 @@ export function createComparisonService(deps: Deps) {
     actor: Actor,
   ): Promise<Prepared | Pending> {
     const station = await readStation(manager, stationId);
-    const [a, b] = await Promise.all([
+    const [a, b, unknownNames] = await Promise.all([
       read.findAntenna(manager, stationId, question.antennaA),
       read.findAntenna(manager, stationId, question.antennaB),
+      unknownIds(manager, stationId, question, 'body'),
     ]);
     const unknown = [
-      ...(a ? [] : [{ path: 'body.antennaA', message: 'The station has no such antenna.' }]),
-      ...(b ? [] : [{ path: 'body.antennaB', message: 'The station has no such antenna.' }]),
+      ...unknownNames,
       ...question.sectors
         .filter((sector) => sector >= station.sectorCount)
         .map((sector) => ({

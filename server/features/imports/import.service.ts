@@ -18,6 +18,7 @@ import { publish } from '../../platform/notify.ts';
 import { readFileStart } from './import-start.ts';
 import { allRefusals, readImport } from './import.read-model.ts';
 import { importRepository } from './import.repository.ts';
+import { refuseUnknownIds } from './mapping-ids.read-model.ts';
 import { receiveUpload } from './receive-upload.ts';
 
 type Audit = (manager: EntityManager, target: string, detail?: Record<string, unknown>) => Promise<void>;
@@ -224,6 +225,7 @@ export function createImportService(deps: Deps) {
       audit: Audit,
     ) {
       const { kind } = given.mapping;
+      await refuseUnknownIds(dataSource.manager, stationId, given.mapping);
       return inTransaction(dataSource, async (manager) => {
         const row = await importRepository.saveMapping(manager, stationId, { ...given, kind, createdBy });
         await audit(manager, String(row.id), { name: given.name, kind });

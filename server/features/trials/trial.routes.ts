@@ -1,9 +1,10 @@
 import * as contract from '../../../shared/contracts/comparison.ts';
 import { inTransaction, isUniqueViolation } from '../../database/transaction.ts';
 import type { Deps } from '../../platform/deps.ts';
-import { Conflict, NotFound } from '../../platform/errors.ts';
+import { Conflict, InvalidRequest, NotFound } from '../../platform/errors.ts';
 import { inStation, route } from '../../platform/route.ts';
 import type { Route } from '../../platform/route.ts';
+import { unknownIds } from '../comparisons/question-ids.read-model.ts';
 import { listTrials } from './trial.read-model.ts';
 import { trialRepository } from './trial.repository.ts';
 
@@ -28,6 +29,12 @@ export function trialRoutes(deps: Deps): Route[] {
     return trial;
   }
 
+  async function checkQuestion(stationId: number, question: contract.ComparisonQuestion | undefined) {
+    if (!question) return;
+    const unknown = await unknownIds(dataSource.manager, stationId, question, 'body.question');
+    if (unknown.length > 0) throw new InvalidRequest('Some fields have to change.', unknown);
+  }
+
   return [
     route(contract.listTrials, { access: inStation('trial:read') }, async ({ params }) => ({
       items: await listTrials(dataSource.manager, params.stationId),
@@ -39,6 +46,7 @@ export function trialRoutes(deps: Deps): Route[] {
       contract.saveTrial,
       { access: write, audit: 'trial.save' },
       async ({ params, body, actor, audit }) => {
+        await checkQuestion(params.stationId, body.question);
         const id = await uniquelyNamed(() =>
           inTransaction(dataSource, async (manager) => {
             const trial = await trialRepository.add(manager, {
@@ -56,6 +64,7 @@ export function trialRoutes(deps: Deps): Route[] {
       },
     ),
     route(contract.updateTrial, { access: write, audit: 'trial.update' }, async ({ params, body, audit }) => {
+      await checkQuestion(params.stationId, body.question);
       await uniquelyNamed(() =>
         inTransaction(dataSource, async (manager) => {
           const done = await trialRepository.update(manager, params.stationId, params.trialId, body);
