@@ -1,5 +1,5 @@
 import type { EntityManager } from 'typeorm';
-import { tagSpots } from '../../../shared/pairing/index.ts';
+import { UNTAGGED, tagSpots } from '../../../shared/pairing/index.ts';
 import { InvalidRequest } from '../../platform/errors.ts';
 
 /** Place in the list of spots, which runs down the unique key: everything below it is still to come. */
@@ -174,7 +174,7 @@ async function skipBarren(
   filter: SpotFilter,
   place: SpotPlace,
 ): Promise<SpotPlace | null> {
-  const wantsUntagged = filter.tag === 2;
+  const wantsUntagged = filter.tag === UNTAGGED;
   if (filter.antennaId === undefined && !wantsUntagged) return place;
   if (filter.antennaId !== undefined && wantsUntagged) return null;
   const highMs = (place.second + 1) * 1000;
