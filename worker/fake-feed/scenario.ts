@@ -118,7 +118,7 @@ export function createDemoScenario(firstNight: string): Scenario {
     antennas: [
       {
         name: 'North-east wire',
-        marker: 'NE',
+        marker: 'N',
         kind: 'long wire',
         headingDeg: 55,
         beamwidthDeg: 75,
@@ -166,7 +166,7 @@ export function createDemoScenario(firstNight: string): Scenario {
       },
       {
         name: 'Small loop south',
-        marker: 'LS',
+        marker: 'L',
         kind: 'loop',
         headingDeg: 160,
         beamwidthDeg: 140,
@@ -178,7 +178,7 @@ export function createDemoScenario(firstNight: string): Scenario {
       },
       {
         name: 'Small loop west',
-        marker: 'LW',
+        marker: 'O',
         kind: 'loop',
         headingDeg: 295,
         beamwidthDeg: 140,
@@ -190,7 +190,7 @@ export function createDemoScenario(firstNight: string): Scenario {
       },
       {
         name: 'Phased pair',
-        marker: 'PP',
+        marker: 'P',
         kind: 'phased pair',
         headingDeg: 80,
         beamwidthDeg: 110,
