@@ -37,7 +37,7 @@ const buckets = 60;
  * written with the spots, in one transaction.
  */
 export function createFeedHealth(options: FeedHealthOptions): FeedHealth {
-  const { dataSource, logger, stationId, feedId, silentAfterMs = 60_000, writeEveryMs = 2_000 } = options;
+  const { dataSource, logger, stationId, feedId, silentAfterMs = 180_000, writeEveryMs = 2_000 } = options;
   let link: ConnectionState = 'connecting';
   let connectedAt: Date | null = null;
   let connectedAtMs = 0;
