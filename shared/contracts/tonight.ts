@@ -43,6 +43,8 @@ export const tonightAnswer = z.object({
       spotsLastTenMinutes: z.number().int(),
     }),
   ),
+  /** By day nobody can say much of the low bands at this hour: the advice is then for the evening to come. */
+  about: z.enum(['this hour', 'the first two hours after sunset']),
   /** For each band heard lately: the antenna that hears best at this hour against the one in use. */
   bands: z.array(
     z.object({

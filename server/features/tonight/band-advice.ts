@@ -64,7 +64,9 @@ export function adviseBand(
   bandMetres: number,
   inUse: ComparedAntenna | null,
   contests: Contest[],
+  about: TonightAnswer['about'],
 ): BandAdvice {
+  const when = about === 'this hour' ? 'at this hour' : `in ${about}`;
   const empty = {
     bandMetres,
     inUseAntennaId: inUse?.id ?? null,
@@ -88,7 +90,7 @@ export function adviseBand(
     const most = Math.max(0, ...contests.map(({ result }) => result.counts.units));
     return {
       ...empty,
-      sentence: `Not enough yet at this hour to say whether another antenna hears better than ${inUse.name}.`,
+      sentence: `Not enough yet ${when} to say whether another antenna hears better than ${inUse.name}.`,
       code: 'not enough yet',
       units: most,
       nights: 0,
@@ -102,8 +104,8 @@ export function adviseBand(
     sentence: better
       ? verdict.sentence
       : all
-        ? `Stay on ${inUse.name}: no other antenna is shown to hear better at this hour. ${verdict.sentence}`
-        : `Stay on ${inUse.name} for now: nothing better is settled at this hour. ${verdict.sentence}`,
+        ? `Stay on ${inUse.name}: no other antenna is shown to hear better ${when}. ${verdict.sentence}`
+        : `Stay on ${inUse.name} for now: nothing better is settled ${when}. ${verdict.sentence}`,
     bestAntennaId: better ? shown.rival.id : inUse.id,
     advantageDb: better ? estimate!.estimateDb : 0,
     intervalDb: better ? estimate!.interval95Db : null,

@@ -1,9 +1,27 @@
 import type { HourRange } from '../../../shared/contracts/comparison.ts';
+import type { TonightAnswer } from '../../../shared/contracts/tonight.ts';
 import { nightIndexOf } from '../../../shared/radio/night.ts';
 import type { Place } from '../../../shared/radio/place.ts';
-import { nightSun } from '../../../shared/radio/sun.ts';
+import { HORIZON_DEG, nightSun, sunAltitudeDeg } from '../../../shared/radio/sun.ts';
 
 const hourMs = 3_600_000;
+const dayMs = 24 * hourMs;
+
+export interface AdvisedHour {
+  about: TonightAnswer['about'];
+  range: HourRange;
+}
+
+/** What the advice of an instant is about: the hour around it, or by day the evening to come. */
+export function advisedHour(atMs: number, place: Place): AdvisedHour {
+  const isDay = sunAltitudeDeg(atMs, place) >= HORIZON_DEG;
+  const { sunsetMs } = nightSun(nightIndexOf(atMs + dayMs / 2, place.longitude), place);
+  if (!isDay || sunsetMs === null) return { about: 'this hour', range: hourAround(atMs, place) };
+  return {
+    about: 'the first two hours after sunset',
+    range: { from: { reference: 'sunset', hours: 0 }, to: { reference: 'sunset', hours: 2 } },
+  };
+}
 
 /**
  * The hour around an instant, one hour either side, counted from the nearer of sunset and sunrise: the same

@@ -9,7 +9,7 @@ import { listReceivers, readStation } from '../station/station.read-model.ts';
 import { readPairUnits } from '../comparisons/comparison.read-model.ts';
 import { adviseBand, holdContests } from './band-advice.ts';
 import type { BandAdvice, Rival } from './band-advice.ts';
-import { hourAround } from './hour-of-night.ts';
+import { advisedHour } from './hour-of-night.ts';
 import { readBusyBands, readReceiversNow, readUsableAntennas } from './tonight.read-model.ts';
 
 /** How far back the evidence of this hour reaches. */
@@ -48,7 +48,8 @@ export function createTonightService(deps: Deps) {
     ]);
     const bands = [...new Set([...busy, ...usualBands])].slice(0, 6).sort((a, b) => b - a);
     const inUse = antennas.find((antenna) => antenna.id === inUseId) ?? null;
-    if (!inUse) return bands.map((band) => adviseBand(band, null, []));
+    const { about, range } = advisedHour(atMs, place);
+    if (!inUse) return bands.map((band) => adviseBand(band, null, [], about));
 
     const { blockMinutes, windowSeconds, freqToleranceKhz, guardSeconds, marginDb, sectorCount } = station;
     const rules = { blockMinutes, windowSeconds, freqToleranceKhz, guardSeconds };
@@ -65,8 +66,8 @@ export function createTonightService(deps: Deps) {
         },
       });
     }
-    const question = { ...nights, hours: hourAround(atMs, place) };
-    return bands.map((band) => adviseBand(band, inUse, holdContests(band, inUse, rivals, question)));
+    const question = { ...nights, hours: range };
+    return bands.map((band) => adviseBand(band, inUse, holdContests(band, inUse, rivals, question), about));
   }
 
   return {
@@ -96,6 +97,7 @@ export function createTonightService(deps: Deps) {
           since: row.since?.toISOString() ?? null,
           spotsLastTenMinutes: row.spots,
         })),
+        about: advisedHour(atMs, { latitude: station.latitudeDeg, longitude: station.longitudeDeg }).about,
         bands: await adviceFor(station, inUse, atMs),
         pairs,
       };
