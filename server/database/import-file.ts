@@ -28,7 +28,8 @@ const harmlessBytes = 64 * 2 ** 20;
 const mostUnpackedBytes = 16 * 2 ** 30;
 
 const sliceBytes = 64 * 1024;
-const unpackedBytes = 256 * 1024;
+/** Small, so that what is made of a piece dies young: with larger ones the heap grows for nothing. */
+const unpackedBytes = 64 * 1024;
 
 /**
  * The bytes of an uploaded file, unpacked, in pieces: one stored chunk is in memory at a time. Throws

@@ -45,7 +45,7 @@ export function isFieldRefusal(outcome: object): outcome is FieldRefusal {
 const lowestSnrDb = -60;
 const highestSnrDb = 120;
 const highestSpeedWpm = 250;
-const longestCallCache = 50_000;
+const longestCache = 50_000;
 const unitsPerKhz = { kHz: 1, MHz: 0.001, Hz: 1000 } as const;
 
 /** What is missing from a mapping, or contradicts itself, whatever the file. */
@@ -159,10 +159,13 @@ function createLineReader(mapping: SpotMapping, fields: FieldReaders): SpotRowRe
 
 function createFieldReaders(mapping: SpotMapping, context: ReadingContext) {
   const findReceiver = createReceiverFinder(mapping, context.receivers);
-  const calls = new Map<string, string | Refusal>();
-  const modes = new Map<string, SpotMode>();
-  const perKhz = unitsPerKhz[mapping.layout === 'spot lines' ? 'kHz' : mapping.freqUnit];
+  const unit = mapping.layout === 'spot lines' ? 'kHz' : mapping.freqUnit;
   const decimalComma = mapping.layout === 'table' && mapping.format.decimalComma;
+  const readCall = remember(readCallSign);
+  const readFreq = remember((text) => readFrequency(text, unit, decimalComma));
+  const readSnr = remember(readSnrDb);
+  const readSpeed = remember(readSpeedWpm);
+  const readMode = remember(modeOf);
 
   function receiver(name: string | null): number | FieldRefusal | 'other receiver' {
     if (mapping.fixedReceiverId !== undefined) return mapping.fixedReceiverId;
@@ -178,36 +181,6 @@ function createFieldReaders(mapping: SpotMapping, context: ReadingContext) {
     };
   }
 
-  function call(text: string): string | Refusal {
-    const known = calls.get(text);
-    if (known !== undefined) return known;
-    const parsed = parseCallSign(text);
-    // A copy: a piece of a string keeps the whole text that it was cut from in memory.
-    const result = isRefusal(parsed) ? parsed : Buffer.from(parsed.call, 'latin1').toString('latin1');
-    if (calls.size >= longestCallCache) calls.clear();
-    calls.set(Buffer.from(text, 'utf8').toString('utf8'), result);
-    return result;
-  }
-
-  function mode(text: string): SpotMode {
-    let found = modes.get(text);
-    if (found === undefined) {
-      found = modeOf(text);
-      if (modes.size < 1000) modes.set(text, found);
-    }
-    return found;
-  }
-
-  function freqKhz(text: string): number | Refusal {
-    const trimmed = decimalComma ? text.trim().replace(',', '.') : text.trim();
-    if (trimmed === '') return { reason: 'The frequency is empty.' };
-    if (!/^\d{1,10}(?:\.\d{1,9})?$/.test(trimmed)) {
-      const example = decimalComma ? '1824,5' : '1824.5';
-      return { reason: `The frequency "${shorten(text.trim())}" is not a number such as ${example}.` };
-    }
-    return Number(trimmed) / perKhz;
-  }
-
   function row(
     atMs: number | Refusal,
     minutesOnly: boolean,
@@ -221,44 +194,23 @@ function createFieldReaders(mapping: SpotMapping, context: ReadingContext) {
     if (typeof atMs !== 'number') return { field: 'time', reason: atMs.reason };
     const outside = checkTimeRange(atMs, context.nowMs);
     if (outside !== null) return { field: 'time', reason: outside };
-    const callRead = call(callText);
-    if (typeof callRead !== 'string') return { field: 'call', reason: callRead.reason };
-    const khz = freqKhz(freqText);
-    if (typeof khz !== 'number') return { field: 'freq', reason: khz.reason };
-    const bandMetres = bandOfKhz(khz);
-    if (bandMetres === null) {
-      return {
-        field: 'freq',
-        reason: `The frequency "${shorten(freqText.trim())}" is in no amateur band (2200 m to 6 m); the mapping reads it as ${mapping.layout === 'table' ? mapping.freqUnit : 'kHz'}.`,
-      };
-    }
-    const snr = wholeNumber(snrText, 'dB');
-    if (snr === null || snr < lowestSnrDb || snr > highestSnrDb) {
-      const written = snrText.trim();
-      return {
-        field: 'snr',
-        reason:
-          written === ''
-            ? 'The SNR is empty.'
-            : `The SNR "${shorten(written)}" is not a whole number of dB from −60 to 120.`,
-      };
-    }
-    const speed = speedText.trim() === '' ? null : wholeNumber(speedText, 'WPM');
-    if (speedText.trim() !== '' && (speed === null || speed < 0 || speed > highestSpeedWpm)) {
-      return {
-        field: 'speed',
-        reason: `The speed "${shorten(speedText.trim())}" is not a whole number of words a minute from 0 to ${highestSpeedWpm}.`,
-      };
-    }
+    const call = readCall(callText);
+    if (typeof call !== 'string') return { field: 'call', reason: call.reason };
+    const freq = readFreq(freqText);
+    if ('reason' in freq) return { field: 'freq', reason: freq.reason };
+    const snrDb = readSnr(snrText);
+    if (typeof snrDb !== 'number') return { field: 'snr', reason: snrDb.reason };
+    const speedWpm = readSpeed(speedText);
+    if (speedWpm !== null && typeof speedWpm !== 'number') return { field: 'speed', reason: speedWpm.reason };
     return {
       heardAtMs: minutesOnly ? Math.floor(atMs / 60_000) * 60_000 : atMs,
       receiverId,
-      call: callRead,
-      freq100Hz: Math.round(khz * 10),
-      bandMetres,
-      snrDb: snr,
-      speedWpm: speed,
-      mode: mode(modeText),
+      call,
+      freq100Hz: freq.freq100Hz,
+      bandMetres: freq.bandMetres,
+      snrDb,
+      speedWpm,
+      mode: readMode(modeText),
       uncertaintySeconds: minutesOnly ? 60 : 0,
       feedMinute: null,
     };
@@ -267,11 +219,69 @@ function createFieldReaders(mapping: SpotMapping, context: ReadingContext) {
   return { receiver, row };
 }
 
-function wholeNumber(text: string, unit: string): number | null {
-  const value = text.length < 4 ? Number(text) : Number.NaN;
-  // Short and plain nearly always; an empty text would be 0.
-  if (Number.isInteger(value) && text.trim() !== '' && !/[a-z.]/i.test(text)) return value + 0;
-  const match = /^\s*([+\-−]?)(\d{1,5})\s*([a-z]*)\s*$/i.exec(text);
+/** Cells repeat: what a text means is worked out once. Halves the time that rows take. */
+function remember<Value>(read: (text: string) => Value): (text: string) => Value {
+  const known = new Map<string, Value>();
+  return (text) => {
+    const found = known.get(text);
+    if (found !== undefined) return found;
+    const value = read(text);
+    if (known.size >= longestCache) known.clear();
+    // A copy: a piece of a string keeps the whole text that it was cut from in memory.
+    known.set(Buffer.from(text, 'utf8').toString('utf8'), value);
+    return value;
+  };
+}
+
+function readCallSign(text: string): string | Refusal {
+  const parsed = parseCallSign(text);
+  return isRefusal(parsed) ? parsed : Buffer.from(parsed.call, 'latin1').toString('latin1');
+}
+
+type Frequency = Pick<SpotRow, 'freq100Hz' | 'bandMetres'>;
+
+function readFrequency(
+  text: string,
+  unit: keyof typeof unitsPerKhz,
+  decimalComma: boolean,
+): Frequency | Refusal {
+  const written = text.trim();
+  if (written === '') return { reason: 'The frequency is empty.' };
+  const plain = decimalComma ? written.replace(',', '.') : written;
+  if (!/^\d{1,10}(?:\.\d{1,9})?$/.test(plain)) {
+    const example = decimalComma ? '1824,5' : '1824.5';
+    return { reason: `The frequency "${shorten(written)}" is not a number such as ${example}.` };
+  }
+  const khz = Number(plain) / unitsPerKhz[unit];
+  const bandMetres = bandOfKhz(khz);
+  if (bandMetres !== null) return { freq100Hz: Math.round(khz * 10), bandMetres };
+  return {
+    reason: `The frequency "${shorten(written)}" is in no amateur band (2200 m to 6 m); the mapping reads it as ${unit}.`,
+  };
+}
+
+function readSnrDb(text: string): number | Refusal {
+  const written = text.trim();
+  if (written === '') return { reason: 'The SNR is empty.' };
+  const snrDb = wholeNumber(written, 'dB');
+  if (snrDb !== null && snrDb >= lowestSnrDb && snrDb <= highestSnrDb) return snrDb;
+  return { reason: `The SNR "${shorten(written)}" is not a whole number of dB from −60 to ${highestSnrDb}.` };
+}
+
+/** Absent and empty speeds are no fault: many modes have none. */
+function readSpeedWpm(text: string): number | null | Refusal {
+  const written = text.trim();
+  if (written === '') return null;
+  const speedWpm = wholeNumber(written, 'WPM');
+  if (speedWpm !== null && speedWpm >= 0 && speedWpm <= highestSpeedWpm) return speedWpm;
+  return {
+    reason: `The speed "${shorten(written)}" is not a whole number of words a minute from 0 to ${highestSpeedWpm}.`,
+  };
+}
+
+/** With its unit behind it or without; null for anything else. */
+function wholeNumber(written: string, unit: string): number | null {
+  const match = /^([+\-−]?)(\d{1,5})\s*([a-z]*)$/i.exec(written);
   if (match === null || (match[3] !== '' && match[3]!.toLowerCase() !== unit.toLowerCase())) return null;
   const size = Number(match[2]);
   return match[1] === '-' || match[1] === '−' ? 0 - size : size;
