@@ -55,8 +55,13 @@ export async function makeOldestDirtyNight(
 }
 
 /**
- * Takes the oldest dirty hour and all others up to the end of its night. An hour in which one night ends
- * and the next begins concerns both. Hours that a writer holds are left for the next round.
+ * Takes the oldest dirty hour and all others of its night. Hours that a writer or another maker holds are
+ * left for the next round.
+ *
+ * The hour in which one night ends and the next begins concerns both. When the next night has another mark
+ * that is free, that mark will have it made anyway, so this round leaves it out; otherwise a whole season
+ * would be made twice. A mark that another maker holds does not count: that maker may have read its spots
+ * before ours came.
  */
 async function claimNights(manager: EntityManager, station: Station): Promise<number[]> {
   const oldest: { starts_at: Date }[] = await manager.query(
@@ -65,20 +70,23 @@ async function claimNights(manager: EntityManager, station: Station): Promise<nu
   );
   if (!oldest[0]) return [];
   const firstMs = oldest[0].starts_at.getTime();
-  const first = nightIndexOf(firstMs, station.longitudeDeg);
-  const last = nightIndexOf(firstMs + hourMs - 1, station.longitudeDeg);
-  await manager.query(
+  const night = nightIndexOf(firstMs, station.longitudeDeg);
+  const nightEnd = nightEndMs(night, station.longitudeDeg);
+  const [claimed]: [{ starts_at: Date }[], number] = await manager.query(
     `DELETE FROM dirty_block d USING (
-       SELECT starts_at FROM dirty_block WHERE station_id = $1 AND starts_at >= $2 AND starts_at <= $3
-       ORDER BY starts_at FOR UPDATE SKIP LOCKED) AS claimed
-     WHERE d.station_id = $1 AND d.starts_at = claimed.starts_at`,
-    [
-      station.id,
-      new Date(firstMs),
-      new Date(Math.max(firstMs, nightEndMs(last, station.longitudeDeg) - hourMs)),
-    ],
+       SELECT starts_at FROM dirty_block WHERE station_id = $1 AND starts_at >= $2 AND starts_at < $3
+       ORDER BY starts_at FOR UPDATE SKIP LOCKED) AS mine
+     WHERE d.station_id = $1 AND d.starts_at = mine.starts_at RETURNING d.starts_at`,
+    [station.id, new Date(firstMs), new Date(nightEnd)],
   );
-  return first === last ? [first] : [first, last];
+  const reachesOver = claimed.some(({ starts_at }) => starts_at.getTime() + hourMs > nightEnd);
+  if (!reachesOver) return [night];
+  const nextHasMarks: unknown[] = await manager.query(
+    `SELECT 1 FROM dirty_block WHERE station_id = $1 AND starts_at >= $2 AND starts_at < $3
+     ORDER BY starts_at LIMIT 1 FOR UPDATE SKIP LOCKED`,
+    [station.id, new Date(nightEnd), new Date(nightEndMs(night + 1, station.longitudeDeg))],
+  );
+  return nextHasMarks.length > 0 ? [night] : [night, night + 1];
 }
 
 /** Other rules that somebody asked for lately follow the change; the rest of their units for the night go. */
