@@ -1,7 +1,10 @@
+import { spawnSync } from 'node:child_process';
+import { existsSync } from 'node:fs';
+import { fileURLToPath } from 'node:url';
 import pg from 'pg';
 import type { TestProject } from 'vitest/node';
-import { connectDataSource, createDataSource } from '../../server/database/data-source.ts';
-import { loadDemo } from '../../worker/fake-feed/load-demo.ts';
+import { buildClient, buildServer } from '../../server/launch/build.mjs';
+import { createTerminal } from '../../server/launch/terminal.mjs';
 import { databaseUrl, dropDatabase, nameDatabase } from './database-names.ts';
 
 declare module 'vitest' {
@@ -11,11 +14,16 @@ declare module 'vitest' {
   }
 }
 
+const root = fileURLToPath(new URL('../..', import.meta.url));
 /** Enough for verdicts and for every picture; the real first start loads thirty. */
 const nights = 6;
 
-/** Once per run of the browser tests, after cluster-setup: the demo station, loaded as `npm start` does. */
+/**
+ * Once per run of the browser tests, after cluster-setup: the delivered programs, built, and the demo station
+ * loaded by the very script that `npm start` runs.
+ */
 export default async function setUp(project: TestProject): Promise<() => Promise<void>> {
+  await ensureBuilt();
   const { adminDatabaseUrl, templateDatabase } = project.getProvidedContext();
   const admin = new pg.Client(adminDatabaseUrl);
   await admin.connect();
@@ -25,18 +33,24 @@ export default async function setUp(project: TestProject): Promise<() => Promise
     await admin.end();
   };
   await admin.query(`CREATE DATABASE ${name} TEMPLATE ${templateDatabase} STRATEGY file_copy`);
-  try {
-    const dataSource = createDataSource({ url: databaseUrl(adminDatabaseUrl, name), poolSize: 4 });
-    await connectDataSource(dataSource);
-    try {
-      await loadDemo(dataSource, { nowMs: Date.now(), nights });
-    } finally {
-      await dataSource.destroy();
-    }
-  } catch (error) {
+  const loader = spawnSync(process.execPath, ['dist/load-demo.js'], {
+    cwd: root,
+    env: { ...process.env, DATABASE_URL: databaseUrl(adminDatabaseUrl, name), DEMO_NIGHTS: String(nights) },
+    encoding: 'utf8',
+  });
+  if (loader.status !== 0) {
     await tearDown();
-    throw error;
+    throw new Error(`The demo could not be loaded: ${loader.stderr}`);
   }
   project.provide('demoDatabase', name);
   return tearDown;
+}
+
+/** `npm test` has built already; a run by hand builds what is stale. */
+async function ensureBuilt(): Promise<void> {
+  if (process.env.CHROMIUM_PATH && existsSync(`${root}dist/client/index.html`)) return;
+  const terminal = createTerminal();
+  const { signal } = new AbortController();
+  await buildServer(root, { terminal, signal });
+  await buildClient(root, { terminal, signal });
 }

@@ -1,15 +1,12 @@
-import { existsSync } from 'node:fs';
 import type { ChildProcess } from 'node:child_process';
 import { spawn } from 'node:child_process';
 import { createInterface } from 'node:readline';
 import { fileURLToPath } from 'node:url';
-import AxeBuilderSource from 'axe-core';
+import axe from 'axe-core';
 import pg from 'pg';
 import { chromium } from 'playwright-core';
 import type { Browser, BrowserContext, Page } from 'playwright-core';
 import { inject } from 'vitest';
-import { buildClient, buildServer } from '../../server/launch/build.mjs';
-import { createTerminal } from '../../server/launch/terminal.mjs';
 import { startLineServer } from '../../worker/fake-feed/line-server.ts';
 import { databaseUrl, dropDatabase, nameDatabase } from './database-names.ts';
 
@@ -39,7 +36,6 @@ export interface SitePage {
  * copy of the demo database, Debian's Chromium. Only the public network is a local stand-in.
  */
 export async function startSite(): Promise<Site> {
-  await ensureBuilt();
   const adminUrl = inject('adminDatabaseUrl');
   const name = nameDatabase('test');
   const admin = new pg.Client(adminUrl);
@@ -123,28 +119,19 @@ export interface AxeFinding {
 /** Serious and critical findings of axe-core on the page as it stands. */
 export async function axeFindings(page: Page): Promise<AxeFinding[]> {
   // By evaluate, not by a script tag: the site's content security policy forbids foreign scripts.
-  await page.evaluate(AxeBuilderSource.source);
+  await page.evaluate(axe.source);
   const violations = await page.evaluate(async () => {
-    const axe = (
+    const inPage = (
       window as unknown as { axe: { run: (o: object) => Promise<{ violations: AxeViolation[] }> } }
     ).axe;
     type AxeViolation = { id: string; impact: string | null; nodes: { target: unknown[] }[] };
-    return (await axe.run({ resultTypes: ['violations'] })).violations.map((v) => ({
+    return (await inPage.run({ resultTypes: ['violations'] })).violations.map((v) => ({
       id: v.id,
       impact: v.impact ?? '',
       where: v.nodes.slice(0, 5).map((n) => n.target.join(' ')),
     }));
   });
   return violations.filter((v) => v.impact === 'serious' || v.impact === 'critical');
-}
-
-/** `npm test` has built already; a single file run by hand builds what is stale. */
-async function ensureBuilt(): Promise<void> {
-  if (process.env.CHROMIUM_PATH && existsSync(`${root}dist/client/index.html`)) return;
-  const terminal = createTerminal();
-  const { signal } = new AbortController();
-  await buildServer(root, { terminal, signal });
-  await buildClient(root, { terminal, signal });
 }
 
 async function startProcess(
