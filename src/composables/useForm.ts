@@ -50,7 +50,9 @@ export function useForm<Values extends object>(
   return { values, errors, problem, isSending, submit };
 }
 
-function firstByPath(issues: readonly { path: PropertyKey[]; message: string }[]): Record<string, string> {
+export function firstByPath(
+  issues: readonly { path: PropertyKey[]; message: string }[],
+): Record<string, string> {
   const byPath: Record<string, string> = {};
   for (const { path, message } of issues) byPath[path.map(String).join('.')] ??= message;
   return byPath;

@@ -57,6 +57,18 @@ export const stationPages: readonly StationPage[] = [
     view: () => import('../views/ImportsView.vue'),
   },
   {
+    name: 'station',
+    word: 'Station',
+    permission: 'station:read',
+    view: () => import('../views/StationView.vue'),
+  },
+  {
+    name: 'members',
+    word: 'Members',
+    permission: 'member:read',
+    view: () => import('../views/MembersView.vue'),
+  },
+  {
     name: 'settings',
     word: 'Settings',
     permission: 'station:read',

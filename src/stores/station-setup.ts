@@ -1,0 +1,125 @@
+import { ref, shallowRef } from 'vue';
+import { defineStore } from 'pinia';
+import type { BodyInput, ReplyOf } from '../../shared/contracts/endpoint.ts';
+import * as contract from '../../shared/contracts/station.ts';
+import { download, request } from '../api/client.ts';
+import { asProblem } from '../api/problem.ts';
+import type { ApiProblem } from '../api/problem.ts';
+import { saveBlob } from '../composables/save-file.ts';
+import type { LoadState } from '../composables/useLoad.ts';
+import { useStationStore } from './station.ts';
+
+export type PositionOverride = ReplyOf<typeof contract.listPositionOverrides>['items'][number];
+
+/** Changes of the station on the screen. Each rejects with an ApiProblem for its form, and else shows at once. */
+export const useStationSetupStore = defineStore('station-setup', () => {
+  const here = useStationStore();
+  const corrections = shallowRef<PositionOverride[]>([]);
+  const correctionsState = ref<LoadState>('idle');
+  const correctionsProblem = shallowRef<ApiProblem | null>(null);
+  let correctionsOf: number | null = null;
+
+  /** The station that a change is meant for: the one on the screen when it was asked, whatever shows later. */
+  function params(): { stationId: number } {
+    if (here.stationId === null) throw new Error('No station is open.');
+    return { stationId: here.stationId };
+  }
+
+  async function saveStation(body: BodyInput<typeof contract.updateStation>): Promise<void> {
+    await request(contract.updateStation, { params: params(), body });
+    await here.reload();
+  }
+
+  async function addReceiver(body: BodyInput<typeof contract.addReceiver>): Promise<void> {
+    await request(contract.addReceiver, { params: params(), body });
+    await here.reload();
+  }
+  async function saveReceiver(
+    receiverId: number,
+    body: BodyInput<typeof contract.updateReceiver>,
+  ): Promise<void> {
+    await request(contract.updateReceiver, { params: { ...params(), receiverId }, body });
+    await here.reload();
+  }
+
+  async function addAntenna(body: BodyInput<typeof contract.addAntenna>): Promise<void> {
+    await request(contract.addAntenna, { params: params(), body });
+    await here.reload();
+  }
+  async function saveAntenna(
+    antennaId: number,
+    body: BodyInput<typeof contract.updateAntenna>,
+  ): Promise<void> {
+    await request(contract.updateAntenna, { params: { ...params(), antennaId }, body });
+    await here.reload();
+  }
+  async function removeAntenna(antennaId: number): Promise<void> {
+    await request(contract.removeAntenna, { params: { ...params(), antennaId } });
+    await here.reload();
+  }
+
+  async function addFeed(body: BodyInput<typeof contract.addFeed>): Promise<void> {
+    await request(contract.addFeed, { params: params(), body });
+    await here.reloadFeeds();
+  }
+  async function saveFeed(feedId: number, body: BodyInput<typeof contract.updateFeed>): Promise<void> {
+    await request(contract.updateFeed, { params: { ...params(), feedId }, body });
+    await here.reloadFeeds();
+  }
+  async function removeFeed(feedId: number): Promise<void> {
+    await request(contract.removeFeed, { params: { ...params(), feedId } });
+    await here.reloadFeeds();
+  }
+  async function saveRefusals(feedId: number): Promise<void> {
+    const { blob, fileName } = await download(contract.downloadFeedRefusals, {
+      params: { ...params(), feedId },
+    });
+    saveBlob(blob, fileName ?? `feed-${feedId}-refused.csv`);
+  }
+
+  /** Never rejects: a failure becomes the state. */
+  async function loadCorrections(): Promise<void> {
+    const wanted = params();
+    if (correctionsOf !== wanted.stationId) corrections.value = [];
+    correctionsOf = wanted.stationId;
+    correctionsState.value = 'loading';
+    try {
+      const { items } = await request(contract.listPositionOverrides, { params: wanted });
+      if (correctionsOf !== wanted.stationId) return;
+      corrections.value = items;
+      correctionsProblem.value = null;
+      correctionsState.value = 'ready';
+    } catch (error) {
+      if (correctionsOf !== wanted.stationId) return;
+      correctionsProblem.value = asProblem(error);
+      correctionsState.value = 'failed';
+    }
+  }
+  async function addCorrection(body: BodyInput<typeof contract.addPositionOverride>): Promise<void> {
+    await request(contract.addPositionOverride, { params: params(), body });
+    await loadCorrections();
+  }
+  async function removeCorrection(positionId: number): Promise<void> {
+    await request(contract.removePositionOverride, { params: { ...params(), positionId } });
+    await loadCorrections();
+  }
+
+  return {
+    corrections,
+    correctionsState,
+    correctionsProblem,
+    saveStation,
+    addReceiver,
+    saveReceiver,
+    addAntenna,
+    saveAntenna,
+    removeAntenna,
+    addFeed,
+    saveFeed,
+    removeFeed,
+    saveRefusals,
+    loadCorrections,
+    addCorrection,
+    removeCorrection,
+  };
+});
