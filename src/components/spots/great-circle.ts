@@ -24,7 +24,7 @@ export function mapPoint(azimuthDeg: number, distanceKm: number, radius: number)
   return [length * Math.sin(angle), -length * Math.cos(angle)];
 }
 
-/** For coast lines. Its earth is a sphere: a bearing on it is within a quarter of a degree of the ellipsoid's. */
+/** For coast lines. Its earth is a sphere: a bearing on it is within half a degree of the ellipsoid’s, but near the antipode. */
 export function stationProjection(centre: MapCentre, radius: number): GeoProjection {
   return (
     geoAzimuthalEquidistant()

@@ -99,16 +99,23 @@ export function filterQuery(filter: SpotFilter) {
   };
 }
 
-/** Text of a `datetime-local` control, which knows no zone: on this page it always means UTC. */
+/** An instant as it is typed on this page: "2026-11-30 18:05", always UTC; seconds only where there are any. */
 export function toTimeInput(at: string | null): string {
   if (at === null) return '';
   const iso = new Date(at).toISOString();
-  return iso.slice(17, 19) === '00' ? iso.slice(0, 16) : iso.slice(0, 19);
+  return `${iso.slice(0, 10)} ${iso.slice(11, iso.slice(17, 19) === '00' ? 16 : 19)}`;
 }
 
-export function fromTimeInput(text: string): string | null {
-  const date = new Date(`${text}Z`);
-  return text === '' || Number.isNaN(date.getTime()) ? null : date.toISOString().replace('.000Z', 'Z');
+/** Undefined where the text is no time that we can read; null where it is empty. */
+export function fromTimeInput(text: string): string | null | undefined {
+  if (text.trim() === '') return null;
+  const parts = /^\s*(\d{4}-\d{2}-\d{2})(?:[T ]+(\d{2}:\d{2})(:\d{2})?)?\s*Z?\s*$/i.exec(text);
+  if (parts === null) return undefined;
+  const iso = `${parts[1]}T${parts[2] ?? '00:00'}${parts[3] ?? ':00'}Z`;
+  // Date rolls the 31st of a short month over into the next one.
+  const isReal =
+    !Number.isNaN(Date.parse(iso)) && new Date(iso).toISOString().slice(0, 19) === iso.slice(0, 19);
+  return isReal ? iso : undefined;
 }
 
 /** Tells rows apart: what the store of spots is unique by. */
