@@ -41,7 +41,7 @@ async function bringIn(kind: 'Spots' | 'Switch log', file: string, makeNames: bo
 async function choose(blank: number, antenna: string): Promise<void> {
   await page.locator('.sentence button').nth(blank).click();
   await page.getByRole('dialog').getByText(antenna, { exact: true }).click();
-  await page.getByRole('dialog').getByRole('button', { name: 'Done' }).click();
+  await page.getByRole('dialog').waitFor({ state: 'hidden' });
 }
 
 describe('the main job in a browser', () => {
@@ -76,11 +76,8 @@ describe('the main job in a browser', () => {
     await page.locator('tr', { hasText: '18:15:00Z' }).first().getByRole('button').first().click();
     await page.getByRole('button', { name: 'Delete', exact: true }).click();
     const preview = page.getByRole('dialog');
-    await preview
-      .getByText(/spots? lose/)
-      .first()
-      .waitFor();
-    await preview.getByRole('button', { name: /delete/i }).click();
+    await preview.getByText('3 spots lose their antenna').waitFor();
+    await preview.getByRole('button', { name: 'Apply' }).click();
     await preview.waitFor({ state: 'hidden' });
     await page.goto(question);
     await page
