@@ -91,15 +91,35 @@ export function checkSpotMapping(mapping: SpotMapping, context: ReadingContext):
   return problems;
 }
 
-/** Throws a MappingError when the mapping does not fit the file's header or the station. */
+/** A row to be filled. */
+export function blankSpotRow(): SpotRow {
+  return {
+    heardAtMs: 0,
+    receiverId: 0,
+    call: '',
+    freq100Hz: 0,
+    bandMetres: 0,
+    snrDb: 0,
+    speedWpm: null,
+    mode: 'other',
+    uncertaintySeconds: 0,
+    feedMinute: null,
+  };
+}
+
+/**
+ * Throws a MappingError when the mapping does not fit the file's header or the station. `takeRow` gives the
+ * object that a good row fills: whoever reads millions gives the same ones again.
+ */
 export function createSpotRowReader(
   mapping: SpotMapping,
   header: readonly string[] | null,
   context: ReadingContext,
+  takeRow: () => SpotRow = blankSpotRow,
 ): SpotRowReader {
   const problems = checkSpotMapping(mapping, context);
   if (problems.length > 0) throw new MappingError(problems);
-  const fields = createFieldReaders(mapping, context);
+  const fields = createFieldReaders(mapping, context, takeRow);
   return mapping.layout === 'spot lines'
     ? createLineReader(mapping, fields)
     : createTableReader(mapping, header, fields);
@@ -157,7 +177,7 @@ function createLineReader(mapping: SpotMapping, fields: FieldReaders): SpotRowRe
   };
 }
 
-function createFieldReaders(mapping: SpotMapping, context: ReadingContext) {
+function createFieldReaders(mapping: SpotMapping, context: ReadingContext, takeRow: () => SpotRow) {
   const findReceiver = createReceiverFinder(mapping, context.receivers);
   const unit = mapping.layout === 'spot lines' ? 'kHz' : mapping.freqUnit;
   const decimalComma = mapping.layout === 'table' && mapping.format.decimalComma;
@@ -202,18 +222,17 @@ function createFieldReaders(mapping: SpotMapping, context: ReadingContext) {
     if (typeof snrDb !== 'number') return { field: 'snr', reason: snrDb.reason };
     const speedWpm = readSpeed(speedText);
     if (speedWpm !== null && typeof speedWpm !== 'number') return { field: 'speed', reason: speedWpm.reason };
-    return {
-      heardAtMs: minutesOnly ? Math.floor(atMs / 60_000) * 60_000 : atMs,
-      receiverId,
-      call,
-      freq100Hz: freq.freq100Hz,
-      bandMetres: freq.bandMetres,
-      snrDb,
-      speedWpm,
-      mode: readMode(modeText),
-      uncertaintySeconds: minutesOnly ? 60 : 0,
-      feedMinute: null,
-    };
+    const spot = takeRow();
+    spot.heardAtMs = minutesOnly ? Math.floor(atMs / 60_000) * 60_000 : atMs;
+    spot.receiverId = receiverId;
+    spot.call = call;
+    spot.freq100Hz = freq.freq100Hz;
+    spot.bandMetres = freq.bandMetres;
+    spot.snrDb = snrDb;
+    spot.speedWpm = speedWpm;
+    spot.mode = readMode(modeText);
+    spot.uncertaintySeconds = minutesOnly ? 60 : 0;
+    return spot;
   }
 
   return { receiver, row };

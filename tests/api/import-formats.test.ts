@@ -27,7 +27,7 @@ beforeAll(async () => {
   api = await startTestApi();
   // A million in a station; here a number that a test reaches soon.
   runner = startJobRunner(api.dataSource, 'test worker', {
-    import: createImportJob({ mostRefusals: 30_000 }),
+    import: createImportJob({ mostRefusals: 30_000, batchRows: 10_000 }),
   });
 });
 afterAll(async () => {

@@ -4,6 +4,7 @@ import type { FileRecord } from '../../shared/imports/delimited.ts';
 import { createFileReader } from '../../shared/imports/file-reader.ts';
 import type { ReadingContext } from '../../shared/imports/reading.ts';
 import {
+  blankSpotRow,
   createSpotRowReader,
   isFieldRefusal,
   type SpotRow,
@@ -18,8 +19,12 @@ import { ImportTaken, recordStep } from './import-progress.ts';
 import { endImport, failImport, type RunningImport } from './import-record.ts';
 import { copyRefusals, type LineRefusal } from './refusal-copy.ts';
 
-/** Rows of the file in one transaction: fastest at this size, and what a crash costs to read again. */
-const batchRows = 25_000;
+export interface ImportLimits {
+  /** Nobody corrects more by hand: the mapping is wrong then. */
+  mostRefusals: number;
+  /** Rows of the file in one transaction. */
+  batchRows: number;
+}
 
 interface Batch {
   rowsRead: number;
@@ -39,11 +44,16 @@ export async function importSpots(
   record: RunningImport,
   mapping: SpotMapping,
   reading: ReadingContext,
-  mostRefusals: number,
+  { mostRefusals, batchRows }: ImportLimits,
 ): Promise<void> {
   const { dataSource, signal } = context;
   let committed = { ...record.counts };
   let writing: Promise<void> = Promise.resolve();
+  /**
+   * Rows of stored batches, to be filled again. New objects for each of millions of rows would live just
+   * long enough to make the heap grow by a hundred megabytes before they are collected.
+   */
+  const spare: SpotRow[] = [];
 
   async function write(batch: Batch): Promise<void> {
     signal.throwIfAborted();
@@ -75,6 +85,7 @@ export async function importSpots(
       },
     });
     committed = step;
+    for (const spot of batch.spots) spare.push(spot);
     context.progress(batch.bytesDone, record.sizeBytes);
   }
 
@@ -86,7 +97,12 @@ export async function importSpots(
     writing.catch(() => undefined);
   }
 
-  const batches = readBatches(context, record, mapping, reading);
+  const batches = readBatches(
+    context,
+    record,
+    (header) => createSpotRowReader(mapping, header, reading, () => spare.pop() ?? blankSpotRow()),
+    batchRows,
+  );
   try {
     for await (const batch of batches) {
       await hand(batch);
@@ -121,17 +137,17 @@ async function finish(manager: EntityManager, record: RunningImport, hasStored: 
 async function* readBatches(
   context: JobContext<'import'>,
   record: RunningImport,
-  mapping: SpotMapping,
-  reading: ReadingContext,
+  compile: (header: readonly string[] | null) => SpotRowReader,
+  batchRows: number,
 ): AsyncGenerator<Batch, void, void> {
-  const file = createFileReader(mapping);
+  const file = createFileReader(record.mapping);
   let readRow: SpotRowReader | null = null;
   let rowNo = 0;
   let share = 0;
   let batch = emptyBatch();
 
   function take(recordOfFile: FileRecord): void {
-    readRow ??= createSpotRowReader(mapping, file.header, reading);
+    readRow ??= compile(file.header);
     const outcome = readRow(recordOfFile);
     rowNo++;
     // Stored and counted by an earlier attempt.
@@ -166,7 +182,7 @@ async function* readBatches(
   }
   for (const found of file.end()) take(found);
   // A file of a header alone says nothing wrong; one that lacks its columns does.
-  readRow ??= createSpotRowReader(mapping, file.header, reading);
+  readRow ??= compile(file.header);
   if (batch.rowsRead > 0) yield takeBatch();
 }
 
