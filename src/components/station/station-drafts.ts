@@ -71,8 +71,8 @@ export function antennaBody(draft: AntennaDraft, unit: LengthUnit): BodyInput<ty
     lengthM: metresFrom(draft.length, unit),
     heightM: metresFrom(draft.height, unit),
     notes: draft.notes,
-    inServiceFrom: draft.from || null,
-    inServiceTo: draft.to || null,
+    inServiceFrom: draft.from.trim() || null,
+    inServiceTo: draft.to.trim() || null,
   };
 }
 
@@ -181,7 +181,7 @@ export function madeAnew(changes: Partial<BodyInput<typeof updateStation>>): str
   }
   if (moves || pairingRules.some((rule) => changes[rule] !== undefined)) {
     sentences.push(
-      'The units of every night are made anew in the background. Until a night is ready, answers rest on its former units. Spots and the switch log stay as they are.',
+      'The units of every night are made anew in the background. Until that is done, answers say how many nights are still waiting. Spots and the switch log stay as they are.',
     );
   }
   if (changes.sectorCount !== undefined)
