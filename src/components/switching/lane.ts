@@ -1,5 +1,5 @@
 import type { Dwell } from '../../../shared/contracts/dwell.ts';
-import { placeOf } from './time-scale.ts';
+import { placeOf, spanOf } from './time-scale.ts';
 import type { TimeRange } from './time-scale.ts';
 
 /** What lies where on one receiver's row of the time line. */
@@ -31,9 +31,24 @@ export interface LaneBundle extends Stretch {
 }
 export type LaneItem = LaneDwell | LaneGap | LaneBundle;
 
+/** A dwell with its times read: the text is read once, not at each step of a drag. `endMs` null: still on. */
+export interface TimedDwell {
+  dwell: Dwell;
+  startMs: number;
+  endMs: number | null;
+}
+
+export function timed(dwell: Dwell): TimedDwell {
+  const endMs = dwell.endsAt === null ? null : Date.parse(dwell.endsAt);
+  return { dwell, startMs: Date.parse(dwell.startsAt), endMs };
+}
+
 /** Narrower than this, neighbours are drawn together. */
 export const narrowPx = 6;
-/** A bundle ends here, so that a night of short dwells still shows how it went along. */
+/**
+ * Bundles are cut at steps of this width, so that a night of short dwells still shows how it went along. The steps are
+ * counted on the clock, not from the edge: bundles must not shimmer while the line is moved.
+ */
 const bundlePx = 28;
 
 /**
@@ -42,7 +57,7 @@ const bundlePx = 28;
  * dwells there are.
  */
 export function layOutLane(
-  dwells: readonly Dwell[],
+  dwells: readonly TimedDwell[],
   range: TimeRange,
   widthPx: number,
   nowMs: number,
@@ -55,25 +70,26 @@ export function layOutLane(
       ? { ...piece, leftPx, rightPx }
       : { ...piece, leftPx, rightPx, guardPx: guardWidth(piece, range, widthPx, guardSeconds) };
   });
-  return bundleNarrow(pieces);
+  return bundleNarrow(pieces, (bundlePx / Math.max(1, widthPx)) * spanOf(range));
 }
 
 type Piece =
   | { kind: 'dwell'; dwell: Dwell; fromMs: number; toMs: number }
   | { kind: 'gap'; isOpen: boolean; fromMs: number; toMs: number };
 
-function cutPieces(dwells: readonly Dwell[], range: TimeRange, nowMs: number): Piece[] {
+function cutPieces(dwells: readonly TimedDwell[], range: TimeRange, nowMs: number): Piece[] {
   const pieces: Piece[] = [];
   const gapUntil = (fromMs: number, toMs: number, isOpen: boolean) => {
     const endMs = Math.min(toMs, nowMs, range.toMs);
     if (endMs > fromMs) pieces.push({ kind: 'gap', isOpen, fromMs, toMs: endMs });
   };
   let reachedMs = range.fromMs;
-  for (const dwell of dwells) {
-    const startMs = Date.parse(dwell.startsAt);
+  for (let i = firstReaching(dwells, range.fromMs); i < dwells.length; i++) {
+    const { dwell, startMs } = dwells[i]!;
+    if (startMs >= range.toMs) break;
     // A dwell without an end lasts until now, or, when it starts ahead of this clock, a moment.
-    const endMs = dwell.endsAt === null ? Math.max(nowMs, startMs + 1000) : Date.parse(dwell.endsAt);
-    if (endMs <= range.fromMs || startMs >= range.toMs) continue;
+    const endMs = dwells[i]!.endMs ?? Math.max(nowMs, startMs + 1000);
+    if (endMs <= range.fromMs) continue;
     gapUntil(reachedMs, startMs, false);
     const fromMs = Math.max(startMs, range.fromMs);
     reachedMs = Math.min(endMs, range.toMs);
@@ -81,6 +97,18 @@ function cutPieces(dwells: readonly Dwell[], range: TimeRange, nowMs: number): P
   }
   gapUntil(reachedMs, Infinity, range.toMs >= nowMs);
   return pieces;
+}
+
+/** Index of the first dwell that may reach beyond a time: sorted and never overlapping, their ends ascend too. */
+function firstReaching(dwells: readonly TimedDwell[], timeMs: number): number {
+  let low = 0;
+  let high = dwells.length;
+  while (low < high) {
+    const middle = (low + high) >> 1;
+    if ((dwells[middle]!.endMs ?? Infinity) <= timeMs) low = middle + 1;
+    else high = middle;
+  }
+  return low;
 }
 
 /**
@@ -103,7 +131,8 @@ export function guardWidth(
   return Math.min(barPx, shownPx);
 }
 
-function bundleNarrow(pieces: readonly (LaneDwell | LaneGap)[]): LaneItem[] {
+function bundleNarrow(pieces: readonly (LaneDwell | LaneGap)[], stepMs: number): LaneItem[] {
+  const stepOf = ({ fromMs }: Stretch) => Math.floor(fromMs / stepMs);
   const items: LaneItem[] = [];
   let run: (LaneDwell | LaneGap)[] = [];
   const close = () => {
@@ -117,7 +146,7 @@ function bundleNarrow(pieces: readonly (LaneDwell | LaneGap)[]): LaneItem[] {
       items.push(piece);
       continue;
     }
-    if (run.length > 0 && piece.rightPx - run[0]!.leftPx > bundlePx) close();
+    if (run.length > 0 && stepOf(piece) !== stepOf(run[0]!)) close();
     // The future between two planned dwells is no piece: what lies apart is not drawn as one.
     if (run.length > 0 && piece.fromMs > run.at(-1)!.toMs) close();
     run.push(piece);

@@ -1,7 +1,7 @@
 import fc from 'fast-check';
 import { describe, expect, it } from 'vitest';
 import type { Dwell } from '../../../shared/contracts/dwell.ts';
-import { guardWidth, itemAt, laneKey, layOutLane, narrowPx } from './lane.ts';
+import { guardWidth, itemAt, laneKey, layOutLane, narrowPx, timed } from './lane.ts';
 import type { LaneBundle, LaneDwell, LaneItem } from './lane.ts';
 
 const at = (text: string) => Date.parse(`2026-11-30T${text}Z`);
@@ -15,7 +15,7 @@ const dwell = (antennaId: number, startMs: number, endMs: number | null): Dwell 
 /** 18:00Z to 20:00Z on 720 px: 6 px a minute. */
 const range = { fromMs: at('18:00:00'), toMs: at('20:00:00') };
 const lay = (dwells: Dwell[], now = '20:30:00', guardSeconds = 20) =>
-  layOutLane(dwells, range, 720, at(now), guardSeconds);
+  layOutLane(dwells.map(timed), range, 720, at(now), guardSeconds);
 const kinds = (items: LaneItem[]) => items.map(({ kind }) => kind);
 
 describe('a row of the time line', () => {
@@ -93,7 +93,7 @@ describe('a row of the time line', () => {
           timeMs += seconds * 1000;
           return dwell((i % 5) + 1, startMs, timeMs);
         });
-        const items = layOutLane(dwells, range, widthPx, at('19:10:00'), 20);
+        const items = layOutLane(dwells.map(timed), range, widthPx, at('19:10:00'), 20);
         const shown = items.reduce(
           (sum, item) => sum + (item.kind === 'bundle' ? item.dwellCount : Number(item.kind === 'dwell')),
           0,
@@ -109,12 +109,26 @@ describe('a row of the time line', () => {
     );
   });
 
+  it('cuts bundles at the same times while the line is moved', () => {
+    const dwells = Array.from({ length: 600 }, (_, i) =>
+      dwell((i % 3) + 1, range.fromMs - 3_600_000 + i * 30_000, range.fromMs - 3_600_000 + (i + 1) * 30_000),
+    ).map(timed);
+    const cutsAfter = (movedMs: number) => {
+      const moved = { fromMs: range.fromMs + movedMs, toMs: range.toMs + movedMs };
+      const items = layOutLane(dwells, moved, 720, moved.toMs, 20);
+      // The outermost ones are cut by the edge of the view.
+      return items.map(({ fromMs }) => fromMs).filter((ms) => ms > range.fromMs + 600_000 && ms < range.toMs);
+    };
+    expect(cutsAfter(0).length).toBeGreaterThan(15);
+    expect(cutsAfter(47_000)).toEqual(cutsAfter(0));
+  });
+
   it('draws 2,000 dwells of a week as a few hundred items', () => {
     const week = { fromMs: range.fromMs, toMs: range.fromMs + 7 * 86_400_000 };
     const dwells = Array.from({ length: 2016 }, (_, i) =>
       dwell((i % 8) + 1, week.fromMs + i * 300_000, week.fromMs + (i + 1) * 300_000),
     );
-    const items = layOutLane(dwells, week, 1000, week.toMs, 20);
+    const items = layOutLane(dwells.map(timed), week, 1000, week.toMs, 20);
     expect(items.length).toBeLessThan(1000 / narrowPx);
     expect(items.every(({ kind }) => kind === 'bundle')).toBe(true);
   });
