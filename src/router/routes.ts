@@ -10,6 +10,8 @@ declare module 'vue-router' {
     isPublic?: boolean;
     /** What the person must be allowed at the station of the route. */
     permission?: Permission;
+    /** The place in the rail that is lit while this page is shown, where it has none of its own. */
+    rail?: StationPageName;
   }
 }
 
@@ -135,7 +137,7 @@ export const routes: RouteRecordRaw[] = [
         path: String.raw`imports/:importId(\d+)`,
         name: 'import',
         component: () => import('../views/ImportView.vue'),
-        meta: { title: 'Import', permission: 'import:read' },
+        meta: { title: 'Import', permission: 'import:read', rail: 'imports' },
       },
     ],
   },

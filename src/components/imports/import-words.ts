@@ -26,7 +26,16 @@ export function rowsOf(kind: ImportKind, count: number): string {
 /** How the rows of a file add up: each part, in the order in which it is told. */
 export function countParts(record: ImportRecord): { label: string; count: number; hint: string }[] {
   return [
-    { label: 'stored', count: record.rowsStored, hint: 'New to the station.' },
+    {
+      label: 'stored',
+      count: record.rowsStored,
+      hint:
+        record.rowsUndone === 0
+          ? 'New to the station.'
+          : record.rowsUndone === record.rowsStored
+            ? 'Removed again, all of them.'
+            : `${formatCount(record.rowsUndone)} of them removed again.`,
+    },
     {
       label: 'doubled',
       count: record.rowsDoubled,

@@ -63,7 +63,7 @@ describe('the table of spots', () => {
       'EA8QSH',
       'Canary Islands',
       '160\u2009m',
-      '1824.5',
+      '1824.5\u2009kHz',
       'CW',
       '\u22123\u2009dB',
       '',
@@ -76,7 +76,7 @@ describe('the table of spots', () => {
     ]);
     expect([rows[1]![8], rows[1]![9], rows[1]![10], rows[1]![12]]).toEqual([
       'receiver 9',
-      'none',
+      'antenna: none',
       'No dwell',
       'not knownbearing unsure',
     ]);
