@@ -27,10 +27,11 @@ export class ApiProblem extends Error {
     this.requestId = given.requestId ?? null;
   }
 
-  /** The first sentence for each field path ("station.locator"), to show beside the field. */
+  /** The first sentence for each field, by its path in the body ("station.locator"), to show beside it. */
   get fieldErrors(): Record<string, string> {
     const byPath: Record<string, string> = {};
-    for (const { path, message } of this.errors) byPath[path] ??= message;
+    // The server names the part of the request too: `body.station.locator`.
+    for (const { path, message } of this.errors) byPath[path.replace(/^body\./, '')] ??= message;
     return byPath;
   }
 }

@@ -3,7 +3,9 @@ import type { AddressInfo } from 'node:net';
 import { setApiBase } from '../../src/api/url.ts';
 
 /** What a test's server answers: a body for 200, or a status with a problem. */
-export type Reply = { status: number; detail?: string } | { body: unknown };
+export type Reply =
+  | { status: number; detail?: string; code?: string; errors?: { path: string; message: string }[] }
+  | { body: unknown };
 export type Routes = Record<string, (body: unknown) => Reply>;
 
 export interface LocalServer {
@@ -32,8 +34,9 @@ export async function startLocalServer(routes: Routes): Promise<LocalServer> {
         type: 'about:blank',
         title: 'Refused',
         status: reply.status,
-        code: 'test',
+        code: reply.code ?? 'test',
         detail: reply.detail,
+        errors: reply.errors,
       };
       response
         .writeHead(reply.status, { 'content-type': 'application/problem+json' })
