@@ -50,7 +50,7 @@ const expected = {
 };
 const isInTheMiddle = ({ state, rowsRead }: ImportRecord) => state === 'running' && rowsRead > 0;
 
-describe('an import whose worker is killed', () => {
+describe('an import whose worker is killed', { timeout: 180_000 }, () => {
   let api: TestApi;
   let tools: ReturnType<typeof makeImportTools>;
   let workers: ChildProcess[];
@@ -127,7 +127,7 @@ async function kill(worker: ChildProcess, when: Promise<unknown> = Promise.resol
   await once(worker, 'exit');
 }
 
-describe('an import whose database is killed', () => {
+describe('an import whose database is killed', { timeout: 180_000 }, () => {
   let prepared: PreparedCluster;
   let workshop: Workshop;
   let cluster: Cluster;

@@ -29,6 +29,7 @@ import { migrate } from '../../server/database/migrate.ts';
 import { importRepository } from '../../server/features/imports/import.repository.ts';
 import { enqueueJob } from '../../server/platform/job-queue.ts';
 import { hashPassword } from '../../server/platform/password.ts';
+import { runImportJob } from '../../worker/imports/import.job.ts';
 import { madeUpHeader, madeUpRow, startJobRunner } from '../helpers/imports.ts';
 import { insertStation } from '../helpers/station-rows.ts';
 
@@ -65,7 +66,8 @@ try {
 
 async function writeRows(path: string, count: number, maxBytes = Infinity): Promise<number> {
   const out = createWriteStream(path);
-  let bytes = out.write(`${madeUpHeader}\n`) ? 0 : 0;
+  out.write(`${madeUpHeader}\n`);
+  let bytes = 0;
   let n = 0;
   while (n < count && bytes < maxBytes) {
     let piece = '';
@@ -159,7 +161,7 @@ async function importOnce(stationId: number, file: string): Promise<number> {
   await importRepository.complete(manager, stationId, id, about);
   await importRepository.queue(manager, stationId, id, await mappingOf(stationId, bytes));
   await enqueueJob(manager, stationId, 'import', { importId: id });
-  const runner = startJobRunner(dataSource);
+  const runner = startJobRunner(dataSource, 'bench', { import: runImportJob });
   const record = await untilEnded(dataSource, id);
   await runner.stop();
   if (record.stored !== rows)

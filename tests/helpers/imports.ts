@@ -14,14 +14,15 @@ import { Receiver } from '../../server/database/entities/receiver.ts';
 import { createLogger } from '../../server/platform/logger.ts';
 import { runBearingsJob } from '../../worker/bearings/bearings.job.ts';
 import { runImportUndoJob } from '../../worker/imports/import-undo.job.ts';
-import { runImportJob } from '../../worker/imports/import.job.ts';
+import { createImportJob, usualLimits } from '../../worker/imports/import.job.ts';
 import type { JobHandlers } from '../../worker/jobs/job-handler.ts';
 import { createJobRunner, type JobRunner } from '../../worker/jobs/job-runner.ts';
 import type { TestApi } from './api.ts';
 import { insertStation } from './station-rows.ts';
 
+/** Small batches: more moments at which something can go wrong. */
 export const importHandlers: JobHandlers = {
-  import: runImportJob,
+  import: createImportJob({ ...usualLimits, batchRows: 10_000 }),
   'import-undo': runImportUndoJob,
   bearings: runBearingsJob,
 };
