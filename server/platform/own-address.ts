@@ -1,14 +1,16 @@
-import { BlockList, isIP } from 'node:net';
+import { BlockList, isIPv4, isIPv6 } from 'node:net';
 
-const own = new BlockList();
-own.addSubnet('0.0.0.0', 8);
-own.addSubnet('127.0.0.0', 8);
-own.addSubnet('169.254.0.0', 16);
-own.addAddress('::', 'ipv6');
-own.addAddress('::1', 'ipv6');
-own.addSubnet('fe80::', 10, 'ipv6');
+const ownIpv4 = new BlockList();
+ownIpv4.addSubnet('0.0.0.0', 8);
+ownIpv4.addSubnet('127.0.0.0', 8);
+ownIpv4.addSubnet('169.254.0.0', 16);
+// A list of its own: asked about an IPv4 address, Node would take it for a mapped one and find the last rule.
+const ownIpv6 = new BlockList();
+ownIpv6.addAddress('::', 'ipv6');
+ownIpv6.addAddress('::1', 'ipv6');
+ownIpv6.addSubnet('fe80::', 10, 'ipv6');
 // IPv4 in IPv6's clothes would walk round the rules above.
-own.addSubnet('::ffff:0:0', 96, 'ipv6');
+ownIpv6.addSubnet('::ffff:0:0', 96, 'ipv6');
 
 /** Names and numbers that the resolver takes for an address: 2130706433, 0x7f.1 and 127.1 are all this machine. */
 const numericHost = /^(0x[0-9a-f]*|[0-9]+)(\.(0x[0-9a-f]*|[0-9]+))*\.?$/i;
@@ -19,8 +21,8 @@ const numericHost = /^(0x[0-9a-f]*|[0-9]+)(\.(0x[0-9a-f]*|[0-9]+))*\.?$/i;
  */
 export function isOwnAddress(host: string): boolean {
   const name = host.replace(/^\[(.*)\]$/, '$1').toLowerCase();
-  const version = isIP(name);
-  if (version !== 0) return own.check(name, version === 6 ? 'ipv6' : 'ipv4');
+  if (isIPv4(name)) return ownIpv4.check(name, 'ipv4');
+  if (isIPv6(name)) return ownIpv6.check(name, 'ipv6');
   if (name.includes(':') || numericHost.test(name)) return true;
   return /(^|\.)localhost\.?$/.test(name);
 }

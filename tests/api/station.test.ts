@@ -332,6 +332,11 @@ describe('feeds', () => {
     },
   );
 
+  it.each(['192.168.1.20', '2001:db8::20', 'skimmer.example.org'])('take %s as a host', async (host) => {
+    const reply = await call(contract.addFeed, { body: body(host) });
+    expect([reply.status, (reply.body as { host: string }).host]).toEqual([201, host]);
+  });
+
   it('may stand on the server itself in demo mode', async () => {
     const { stationId } = await insertStation(demo.dataSource);
     const manager = await demo.addPerson(stationId, 'manager');
