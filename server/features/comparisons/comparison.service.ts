@@ -85,7 +85,7 @@ export function createComparisonService(deps: Deps) {
       preparation: {
         rulesKey: key,
         standing: isStanding,
-        nightsWaiting: nightsWaiting(dirty, station.longitudeDeg, question),
+        nightsWaiting: nightsWaiting(dirty, station.longitudeDeg, question, deps.now()),
         firstNight: tallies[0]?.night ?? null,
         lastNight: tallies.at(-1)?.night ?? null,
       },
@@ -136,8 +136,18 @@ function distinctCalls(pair: read.PairUnits): Set<number> {
   return calls;
 }
 
-function nightsWaiting(dirtyHoursMs: number[], longitudeDeg: number, nights: read.NightRange): number {
+/**
+ * Nights whose units follow a correction or an import. The night of the present does not count: live spots
+ * mark it all the time, and it is followed every few seconds anyway.
+ */
+function nightsWaiting(
+  dirtyHoursMs: number[],
+  longitudeDeg: number,
+  nights: read.NightRange,
+  nowMs: number,
+): number {
   const dates = new Set(dirtyHoursMs.map((ms) => nightDate(nightIndexOf(ms, longitudeDeg))));
+  dates.delete(nightDate(nightIndexOf(nowMs, longitudeDeg)));
   return [...dates].filter(
     (date) =>
       (nights.fromNight === null || date >= nights.fromNight) &&
