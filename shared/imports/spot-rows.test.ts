@@ -1,7 +1,6 @@
 import { describe, expect, it } from 'vitest';
 import type { SpotMapping } from '../contracts/import.ts';
 import type { ReadingContext } from './reading.ts';
-import { parseSpotLine } from './spot-line.ts';
 import { createSpotRowReader, type SpotOutcome } from './spot-rows.ts';
 
 const context: ReadingContext = {
@@ -69,6 +68,10 @@ describe('createSpotRowReader', () => {
     [4, ' 7 ', { snrDb: 7 }],
     [6, '', { speedWpm: null }],
     [6, '31 wpm', { speedWpm: 31 }],
+    [6, '1', { speedWpm: 1 }],
+    [6, '200', { speedWpm: 200 }],
+    [4, '120', { snrDb: 120 }],
+    [4, '-60', { snrDb: -60 }],
     [5, '', { mode: 'other' }],
     [2, 'EA8/W1QRB/P', { call: 'EA8/W1QRB/P' }],
   ] as const)('takes column %i "%s"', (index, text, expected) => {
@@ -88,6 +91,8 @@ describe('createSpotRowReader', () => {
     [3, '1824.5 kHz', 'freq'],
     [6, 'fast', 'speed'],
     [6, '-1', 'speed'],
+    [6, '0', 'speed'],
+    [6, '201', 'speed'],
     [2, 'EA8QSH\ufffd', 'call'],
     [1, '', 'receiver'],
     [0, '2026-01-07T00:00:01Z', 'time'],
@@ -125,43 +130,50 @@ describe('createSpotRowReader', () => {
   });
 });
 
-describe('parseSpotLine', () => {
-  it('reads what the trade’s feeds write', () => {
-    const line = 'DX de EI7QSA-#:   1824.5  EA8QSH       CW    21 dB  22 WPM  CQ      1804Z';
-    const fields = {
-      receiver: 'EI7QSA-#',
-      freqKhz: '1824.5',
-      call: 'EA8QSH',
-      mode: 'CW',
-      snrDb: '21',
-      speedWpm: '22',
-      minute: 18 * 60 + 4,
-    };
-    expect(parseSpotLine(line)).toEqual(fields);
-    expect(parseSpotLine(line.replace(/ +/g, ' '))).toEqual(fields);
-    expect(parseSpotLine(`${line}\u0007\u0007`)).toEqual(fields);
-    expect(parseSpotLine(line.replace('#:  ', '#:').replace('21 dB', '21dB'))).toEqual(fields);
-  });
+describe('createSpotRowReader on spot lines', () => {
+  const usual = 'DX de EI7QSA-#:   1824.5  EA8QSH       CW    21 dB  22 WPM  CQ      1804Z';
+  const readLine = (line: string, change: Partial<SpotMapping> = {}) =>
+    createSpotRowReader(
+      { ...mapping, layout: 'spot lines', firstDay: '2026-01-05', ...change },
+      null,
+      context,
+    )({ lineNo: 1, raw: line, cells: [line], broken: null });
 
-  it('stands a missing speed and bits a second', () => {
-    expect(parseSpotLine('DX de EI7QSA: 3580.1 W1QRB RTTY -3 dB 45 BPS CQ 0000Z')).toMatchObject({
-      mode: 'RTTY',
-      snrDb: '-3',
-      speedWpm: '',
-      minute: 0,
-    });
-    expect(parseSpotLine('DX de EI7QSA: 3580.1 W1QRB FT8 -13 dB 2359Z')).toMatchObject({
-      speedWpm: '',
-      minute: 1439,
+  it('makes a spot of a line, known to the minute', () => {
+    expect(readLine(usual)).toEqual({
+      heardAtMs: Date.UTC(2026, 0, 5, 18, 4),
+      receiverId: 1,
+      call: 'EA8QSH',
+      freq100Hz: 18245,
+      bandMetres: 160,
+      snrDb: 21,
+      speedWpm: 22,
+      mode: 'CW',
+      uncertaintySeconds: 60,
+      feedMinute: null,
     });
   });
 
   it.each([
-    ['DX de EI7QSA: 1824.5 EA8QSH CW 21 dB 22 WPM CQ', null],
-    ['DX de EI7QSA: 1824.5 EA8QSH thanks for the contact 1804Z', 'snr'],
-    ['DX de EI7QSA: 1824.5 EA8QSH CW 21 dB 2460Z', 'time'],
     ['Good evening', null],
-  ])('refuses "%s"', (line, field) => {
-    expect(parseSpotLine(line)).toMatchObject({ field, reason: expect.stringMatching(/[.]$/) });
+    ['DX de EI7QSA-# 1824.5 EA8QSH CW 21 dB 1804Z', 'receiver'],
+    [usual.replace('1824.5', '5000.0'), 'freq'],
+    [usual.replace('EA8QSH', 'HELLO!'), 'call'],
+    [usual.replace('CW', '??'), 'mode'],
+    [usual.replace('21 dB', '121 dB'), 'snr'],
+    [usual.replace('22 WPM', '0 WPM'), 'speed'],
+    [usual.replace('22 WPM', '201 WPM'), 'speed'],
+    [usual.replace('1804Z', '2460Z'), 'time'],
+  ])('refuses the line "%s" by its field', (line, field) => {
+    expect(readLine(line)).toEqual({ field, reason: expect.stringMatching(/[.]$/) });
+  });
+
+  it('leaves out damaged lines of other receivers too where the mapping says so', () => {
+    const damaged = 'DX de W1QRB-#: 1824.5 EA8QSH CW';
+    expect(readLine(damaged, { otherReceivers: 'skip' })).toBe('other receiver');
+    expect(readLine(damaged)).toMatchObject({ field: 'snr' });
+    expect(readLine(damaged.replace('W1QRB', 'EI7QSA'), { otherReceivers: 'skip' })).toMatchObject({
+      field: 'snr',
+    });
   });
 });

@@ -1,8 +1,10 @@
 import type { SpotMapping } from '../contracts/import.ts';
 import { modeOf, type SpotMode } from '../contracts/spot-mode.ts';
-import { bandOfKhz } from '../radio/bands.ts';
-import { parseCallSign } from '../radio/call-sign.ts';
+import { createCallReader } from '../radio/call-reader.ts';
 import { isRefusal, type Refusal } from '../radio/place.ts';
+import { remember } from '../radio/remember.ts';
+import { readFrequency, readSnrDb, readSpeedWpm, shorten } from '../radio/spot-fields.ts';
+import { takeApartSpotLine } from '../radio/spot-line.ts';
 import type { FileRecord } from './delimited.ts';
 import {
   checkTimeRange,
@@ -16,7 +18,6 @@ import {
   type MappingProblem,
   type ReadingContext,
 } from './reading.ts';
-import { parseSpotLine } from './spot-line.ts';
 import { compileTimeFormat, createDayRoller, type TimeReader } from './time-format.ts';
 
 /** A spot as a file gives it: what the worker stores. */
@@ -41,12 +42,7 @@ export function isFieldRefusal(outcome: object): outcome is FieldRefusal {
   return 'reason' in outcome;
 }
 
-/** Receivers report SNR in whole dB; beyond these it is another column. */
-const lowestSnrDb = -60;
-const highestSnrDb = 120;
-const highestSpeedWpm = 250;
-const longestCache = 50_000;
-const unitsPerKhz = { kHz: 1, MHz: 0.001, Hz: 1000 } as const;
+const spotLineExample = 'DX de EI7QSA-#: 1824.5 EA8QSH CW 21 dB 22 WPM CQ 1812Z';
 
 /** What is missing from a mapping, or contradicts itself, whatever the file. */
 export function checkSpotMapping(mapping: SpotMapping, context: ReadingContext): MappingProblem[] {
@@ -168,8 +164,12 @@ function createLineReader(mapping: SpotMapping, fields: FieldReaders): SpotRowRe
   const toDay = createDayRoller(mapping.firstDay!);
   return ({ cells, broken }) => {
     if (broken !== null) return { field: null, reason: broken };
-    const line = parseSpotLine(cells[0]!);
-    if ('reason' in line) return line;
+    const line = takeApartSpotLine(cells[0]!);
+    if (line === null) return { field: null, reason: `The line is not a spot such as "${spotLineExample}".` };
+    if ('reason' in line) {
+      const isOther = line.receiver !== null && fields.receiver(line.receiver) === 'other receiver';
+      return isOther ? 'other receiver' : { field: line.field, reason: line.reason };
+    }
     const atMs = toDay(line.minute * 60_000);
     const receiverId = fields.receiver(line.receiver);
     if (typeof receiverId !== 'number') return receiverId;
@@ -181,7 +181,7 @@ function createFieldReaders(mapping: SpotMapping, context: ReadingContext, takeR
   const findReceiver = createReceiverFinder(mapping, context.receivers);
   const unit = mapping.layout === 'spot lines' ? 'kHz' : mapping.freqUnit;
   const decimalComma = mapping.layout === 'table' && mapping.format.decimalComma;
-  const readCall = remember(readCallSign);
+  const readCall = createCallReader();
   const readFreq = remember((text) => readFrequency(text, unit, decimalComma));
   const readSnr = remember(readSnrDb);
   const readSpeed = remember(readSpeedWpm);
@@ -236,78 +236,6 @@ function createFieldReaders(mapping: SpotMapping, context: ReadingContext, takeR
   }
 
   return { receiver, row };
-}
-
-/** Cells repeat: what a text means is worked out once. Halves the time that rows take. */
-function remember<Value>(read: (text: string) => Value): (text: string) => Value {
-  const known = new Map<string, Value>();
-  return (text) => {
-    const found = known.get(text);
-    if (found !== undefined) return found;
-    const value = read(text);
-    if (known.size >= longestCache) known.clear();
-    // A copy: a piece of a string keeps the whole text that it was cut from in memory.
-    known.set(Buffer.from(text, 'utf8').toString('utf8'), value);
-    return value;
-  };
-}
-
-function readCallSign(text: string): string | Refusal {
-  const parsed = parseCallSign(text);
-  return isRefusal(parsed) ? parsed : Buffer.from(parsed.call, 'latin1').toString('latin1');
-}
-
-type Frequency = Pick<SpotRow, 'freq100Hz' | 'bandMetres'>;
-
-function readFrequency(
-  text: string,
-  unit: keyof typeof unitsPerKhz,
-  decimalComma: boolean,
-): Frequency | Refusal {
-  const written = text.trim();
-  if (written === '') return { reason: 'The frequency is empty.' };
-  const plain = decimalComma ? written.replace(',', '.') : written;
-  if (!/^\d{1,10}(?:\.\d{1,9})?$/.test(plain)) {
-    const example = decimalComma ? '1824,5' : '1824.5';
-    return { reason: `The frequency "${shorten(written)}" is not a number such as ${example}.` };
-  }
-  const khz = Number(plain) / unitsPerKhz[unit];
-  const bandMetres = bandOfKhz(khz);
-  if (bandMetres !== null) return { freq100Hz: Math.round(khz * 10), bandMetres };
-  return {
-    reason: `The frequency "${shorten(written)}" is in no amateur band (2200 m to 6 m); the mapping reads it as ${unit}.`,
-  };
-}
-
-function readSnrDb(text: string): number | Refusal {
-  const written = text.trim();
-  if (written === '') return { reason: 'The SNR is empty.' };
-  const snrDb = wholeNumber(written, 'dB');
-  if (snrDb !== null && snrDb >= lowestSnrDb && snrDb <= highestSnrDb) return snrDb;
-  return { reason: `The SNR "${shorten(written)}" is not a whole number of dB from −60 to ${highestSnrDb}.` };
-}
-
-/** Absent and empty speeds are no fault: many modes have none. */
-function readSpeedWpm(text: string): number | null | Refusal {
-  const written = text.trim();
-  if (written === '') return null;
-  const speedWpm = wholeNumber(written, 'WPM');
-  if (speedWpm !== null && speedWpm >= 0 && speedWpm <= highestSpeedWpm) return speedWpm;
-  return {
-    reason: `The speed "${shorten(written)}" is not a whole number of words a minute from 0 to ${highestSpeedWpm}.`,
-  };
-}
-
-/** With its unit behind it or without; null for anything else. */
-function wholeNumber(written: string, unit: string): number | null {
-  const match = /^([+\-−]?)(\d{1,5})\s*([a-z]*)$/i.exec(written);
-  if (match === null || (match[3] !== '' && match[3]!.toLowerCase() !== unit.toLowerCase())) return null;
-  const size = Number(match[2]);
-  return match[1] === '-' || match[1] === '−' ? 0 - size : size;
-}
-
-function shorten(text: string): string {
-  return text.length > 40 ? `${text.slice(0, 40)}…` : text;
 }
 
 /** What a row becomes, by field name, as text: for the preview. */

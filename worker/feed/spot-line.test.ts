@@ -72,6 +72,7 @@ describe('the spot line parser', () => {
     ['snr', usual.replace('21 dB', '2.5 dB'), 'EI7QSA-#'],
     ['snr', usual.replace('21 dB', '999 dB'), 'EI7QSA-#'],
     ['speed', usual.replace('22 WPM', '0 WPM'), 'EI7QSA-#'],
+    ['speed', usual.replace('22 WPM', '201 WPM'), 'EI7QSA-#'],
     ['speed', usual.replace('22 WPM', '999 WPM'), 'EI7QSA-#'],
     ['time', usual.replace('1812Z', ''), 'EI7QSA-#'],
     ['time', usual.replace('1812Z', '9999Z'), 'EI7QSA-#'],
