@@ -155,6 +155,19 @@ describe('the Station page', () => {
     expect(sent).toEqual([{ heightM: 3.048 }]);
   });
 
+  it('names the limit of a length in feet when feet are typed', async () => {
+    const view = await open('manager', 'antennas', 'ft');
+    await press(view, 'Edit North-east wire');
+    await field(view, 'Length').setValue('7000');
+    await field(view, 'Height').setValue('985');
+    await press(view, 'Save');
+    // The limits are 2000 m and 300 m; a foot is 0.3048 m.
+    expect(view.get('dialog').text()).toContain('Give at most 6561 feet.');
+    expect(view.get('dialog').text()).toContain('Give at most 984 feet.');
+    expect(view.get('dialog').text()).not.toContain('metres');
+    expect(sent).toEqual([]);
+  });
+
   it("puts the server's sentence beside its field and keeps all that was typed, even after leaving", async () => {
     onSave = () => ({
       status: 409,

@@ -1,15 +1,9 @@
 import type { BodyInput } from '../../../shared/contracts/endpoint.ts';
-import type {
-  Antenna,
-  Feed,
-  Receiver,
-  Station,
-  addAntenna,
-  addFeed,
-  addPositionOverride,
-  addReceiver,
-  updateStation,
-} from '../../../shared/contracts/station.ts';
+import type { Antenna, addAntenna } from '../../../shared/contracts/antenna.ts';
+import type { Feed, addFeed } from '../../../shared/contracts/feed.ts';
+import type { addPositionOverride } from '../../../shared/contracts/position.ts';
+import type { Receiver, addReceiver } from '../../../shared/contracts/receiver.ts';
+import type { Station, updateStation } from '../../../shared/contracts/station.ts';
 import { feetToMetres, metresToFeet } from '../../../shared/radio/convert.ts';
 import type { LengthUnit } from '../../styles/format.ts';
 
@@ -44,6 +38,18 @@ function metresFrom(text: string, unit: LengthUnit): number | null {
   const length = numberFrom(text);
   // Centimetres: finer than any wire is known, and 100 ft must come back as 100 ft.
   return length === null ? null : Number((unit === 'ft' ? feetToMetres(length) : length).toFixed(3));
+}
+
+/**
+ * A refusal of a length, its limit in the reader's unit: the contract names metres. Rounded down, so that the limit
+ * that is named is taken.
+ */
+export function lengthRefusal(sentence: string | undefined, unit: LengthUnit): string | undefined {
+  if (unit === 'm') return sentence;
+  return sentence?.replace(
+    /(\d+) metres/,
+    (_, metres: string) => `${Math.floor(metresToFeet(Number(metres)))} feet`,
+  );
 }
 
 export function antennaDraft(antenna: Antenna | null, unit: LengthUnit): AntennaDraft {

@@ -1,7 +1,9 @@
 import fc from 'fast-check';
 import { describe, expect, it } from 'vitest';
-import { addAntenna, updateAntenna, updateStation } from '../../../shared/contracts/station.ts';
-import type { Antenna, Station } from '../../../shared/contracts/station.ts';
+import { addAntenna, updateAntenna } from '../../../shared/contracts/antenna.ts';
+import { updateStation } from '../../../shared/contracts/station.ts';
+import type { Antenna } from '../../../shared/contracts/antenna.ts';
+import type { Station } from '../../../shared/contracts/station.ts';
 import { compassWedge, tip } from './antenna-compass.ts';
 import { coordinate } from './coordinate.ts';
 import { feedWords } from './feed-words.ts';
@@ -12,6 +14,7 @@ import {
   changesOf,
   feedBody,
   feedDraft,
+  lengthRefusal,
   madeAnew,
   numberFrom,
   stationBody,
@@ -67,6 +70,24 @@ describe('what is typed into a form', () => {
       const draft = { ...antennaDraft(wire, unit), notes: 'new notes' };
       expect(changesOf(antennaBody(draft, unit), stored)).toEqual({ notes: 'new notes' });
     }
+  });
+
+  it('names the limit of a refused length in feet to who reads feet, and takes the limit that it names', () => {
+    // 2000 m / 0.3048 = 6561.68 ft; 300 m / 0.3048 = 984.25 ft.
+    for (const [key, draftKey, feet] of [
+      ['lengthM', 'length', 6561],
+      ['heightM', 'height', 984],
+    ] as const) {
+      const typed = (text: string) =>
+        addAntenna.body.safeParse(antennaBody({ ...antennaDraft(wire, 'ft'), [draftKey]: text }, 'ft'));
+      const [issue] = typed(String(feet + 1)).error!.issues;
+      expect(issue!.path).toEqual([key]);
+      expect(lengthRefusal(issue!.message, 'ft')).toBe(`Give at most ${feet} feet.`);
+      expect(lengthRefusal(issue!.message, 'm')).toMatch(/^Give at most \d+ metres\.$/);
+      expect(typed(String(feet)).success).toBe(true);
+    }
+    expect(lengthRefusal('Give more than 0.', 'ft')).toBe('Give more than 0.');
+    expect(lengthRefusal(undefined, 'ft')).toBe(undefined);
   });
 
   it('turns feet into metres by the international foot and gives the same feet back', () => {
