@@ -33,6 +33,17 @@ export const callSignText = z
   .toUpperCase()
   .regex(/^(?=.*[0-9])(?=.*[A-Z])[A-Z0-9]{3,12}$/, 'Give a call sign of letters and digits such as EI7QSB.');
 
+export const locatorText = z
+  .string()
+  .trim()
+  .regex(/^[A-R]{2}([0-9]{2}([A-X]{2}([0-9]{2})?)?)?$/i, 'Give a Maidenhead locator such as IO53 or IO53kr.');
+
+/** A number in a range, with one sentence for every way to miss it. */
+export const numberWithin = (from: number, to: number) => {
+  const sentence = `Give a number from ${from} to ${to}.`;
+  return z.number(sentence).min(from, sentence).max(to, sentence);
+};
+
 /** A list read in pages: pass `next` of one page as `after` of the following one. */
 export const page = <T extends ZodType>(item: T) =>
   z.object({ items: z.array(item), next: z.string().nullable() });

@@ -1,7 +1,12 @@
 import { shallowRef } from 'vue';
 import type { ShallowRef } from 'vue';
-import * as contract from '../../shared/contracts/station.ts';
-import type { Antenna, Feed, Receiver } from '../../shared/contracts/station.ts';
+import * as antennaContract from '../../shared/contracts/antenna.ts';
+import * as feedContract from '../../shared/contracts/feed.ts';
+import * as receiverContract from '../../shared/contracts/receiver.ts';
+import * as stationContract from '../../shared/contracts/station.ts';
+import type { Antenna } from '../../shared/contracts/antenna.ts';
+import type { Feed } from '../../shared/contracts/feed.ts';
+import type { Receiver } from '../../shared/contracts/receiver.ts';
 import * as drafts from '../components/station/station-drafts.ts';
 import { useSessionStore } from '../stores/session.ts';
 import { useStationSetupStore } from '../stores/station-setup.ts';
@@ -61,11 +66,13 @@ export function useStationEditor(): StationEditor {
     const unit = session.lengthUnit;
     const body = drafts.antennaBody(draft, unit);
     if (!of) {
-      const added = saving.save(contract.addAntenna.body, body, () => setup.addAntenna(body));
+      const added = saving.save(antennaContract.addAntenna.body, body, () => setup.addAntenna(body));
       return finish(added, saved, `${draft.name} was added.`);
     }
     const changes = drafts.changesOf(body, drafts.antennaBody(drafts.antennaDraft(of, unit), unit));
-    const done = saving.save(contract.updateAntenna.body, changes, () => setup.saveAntenna(of.id, changes));
+    const done = saving.save(antennaContract.updateAntenna.body, changes, () =>
+      setup.saveAntenna(of.id, changes),
+    );
     return finish(done, saved, `${draft.name} was saved.`);
   }
 
@@ -73,11 +80,13 @@ export function useStationEditor(): StationEditor {
     const of = editor.value?.kind === 'receiver' ? editor.value.of : null;
     const body = drafts.receiverBody(draft);
     if (!of) {
-      const added = saving.save(contract.addReceiver.body, body, () => setup.addReceiver(body));
+      const added = saving.save(receiverContract.addReceiver.body, body, () => setup.addReceiver(body));
       return finish(added, saved, `${draft.label} was added.`);
     }
     const changes = drafts.changesOf(body, drafts.receiverBody(drafts.receiverDraft(of)));
-    const done = saving.save(contract.updateReceiver.body, changes, () => setup.saveReceiver(of.id, changes));
+    const done = saving.save(receiverContract.updateReceiver.body, changes, () =>
+      setup.saveReceiver(of.id, changes),
+    );
     return finish(done, saved, `${draft.label} was saved.`);
   }
 
@@ -85,18 +94,18 @@ export function useStationEditor(): StationEditor {
     const of = editor.value?.kind === 'feed' ? editor.value.of : null;
     const body = drafts.feedBody(draft);
     if (!of) {
-      const added = saving.save(contract.addFeed.body, body, () => setup.addFeed(body));
+      const added = saving.save(feedContract.addFeed.body, body, () => setup.addFeed(body));
       return finish(added, saved, `${draft.name} was added.`);
     }
     const changes = drafts.changesOf(body, drafts.feedBody(drafts.feedDraft(of, '')));
-    const done = saving.save(contract.updateFeed.body, changes, () => setup.saveFeed(of.id, changes));
+    const done = saving.save(feedContract.updateFeed.body, changes, () => setup.saveFeed(of.id, changes));
     return finish(done, saved, `${draft.name} was saved.`);
   }
 
   function saveStation(draft: drafts.StationDraft, saved: () => void): Promise<void> {
     const stored = drafts.stationBody(drafts.stationDraft(here.station!));
     const changes = drafts.changesOf(drafts.stationBody(draft), stored);
-    const done = saving.save(contract.updateStation.body, changes, () => setup.saveStation(changes));
+    const done = saving.save(stationContract.updateStation.body, changes, () => setup.saveStation(changes));
     return finish(done, saved, 'The station was saved.');
   }
 

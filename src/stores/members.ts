@@ -2,16 +2,18 @@ import { computed, ref, shallowRef } from 'vue';
 import { defineStore } from 'pinia';
 import type { BodyInput, ReplyOf } from '../../shared/contracts/endpoint.ts';
 import type { Role } from '../../shared/contracts/permission.ts';
-import * as contract from '../../shared/contracts/station.ts';
+import * as auditContract from '../../shared/contracts/audit.ts';
+import * as memberContract from '../../shared/contracts/member.ts';
+import * as tokenContract from '../../shared/contracts/token.ts';
 import { request } from '../api/client.ts';
 import { asProblem, isAbort } from '../api/problem.ts';
 import type { ApiProblem } from '../api/problem.ts';
 import type { LoadState } from '../composables/useLoad.ts';
 
-export type Member = ReplyOf<typeof contract.listMembers>['members'][number];
-export type Invitation = ReplyOf<typeof contract.listMembers>['invitations'][number];
-export type ApiToken = ReplyOf<typeof contract.listTokens>['items'][number];
-export type AuditEntry = ReplyOf<typeof contract.listAudit>['items'][number];
+export type Member = ReplyOf<typeof memberContract.listMembers>['members'][number];
+export type Invitation = ReplyOf<typeof memberContract.listMembers>['invitations'][number];
+export type ApiToken = ReplyOf<typeof tokenContract.listTokens>['items'][number];
+export type AuditEntry = ReplyOf<typeof auditContract.listAudit>['items'][number];
 
 const auditPage = 50;
 
@@ -72,7 +74,7 @@ export const useMembersStore = defineStore('members', () => {
 
   function loadPeople(): Promise<void> {
     return load(people, async (signal) => {
-      const answer = await request(contract.listMembers, { params: target(), signal });
+      const answer = await request(memberContract.listMembers, { params: target(), signal });
       return () => {
         members.value = answer.members;
         invitations.value = answer.invitations;
@@ -81,14 +83,14 @@ export const useMembersStore = defineStore('members', () => {
   }
   function loadTokens(): Promise<void> {
     return load(keys, async (signal) => {
-      const { items } = await request(contract.listTokens, { params: target(), signal });
+      const { items } = await request(tokenContract.listTokens, { params: target(), signal });
       return () => (tokens.value = items);
     });
   }
   /** From the newest entry on; what was read of older ones is let go. */
   function loadAudit(): Promise<void> {
     return load(trail, async (signal) => {
-      const page = await request(contract.listAudit, {
+      const page = await request(auditContract.listAudit, {
         params: target(),
         query: { limit: auditPage },
         signal,
@@ -104,7 +106,7 @@ export const useMembersStore = defineStore('members', () => {
     if (after === null || auditMore.value) return;
     auditMore.value = true;
     await load(trail, async (signal) => {
-      const page = await request(contract.listAudit, {
+      const page = await request(auditContract.listAudit, {
         params: target(),
         query: { limit: auditPage, after },
         signal,
@@ -117,30 +119,30 @@ export const useMembersStore = defineStore('members', () => {
     auditMore.value = false;
   }
 
-  async function invite(body: BodyInput<typeof contract.inviteMember>): Promise<void> {
-    await request(contract.inviteMember, { params: target(), body });
+  async function invite(body: BodyInput<typeof memberContract.inviteMember>): Promise<void> {
+    await request(memberContract.inviteMember, { params: target(), body });
     await loadPeople();
   }
   async function withdraw(invitationId: string): Promise<void> {
-    await request(contract.withdrawInvitation, { params: { ...target(), invitationId } });
+    await request(memberContract.withdrawInvitation, { params: { ...target(), invitationId } });
     await loadPeople();
   }
   async function changeRole(userId: string, role: Role): Promise<void> {
-    await request(contract.changeMemberRole, { params: { ...target(), userId }, body: { role } });
+    await request(memberContract.changeMemberRole, { params: { ...target(), userId }, body: { role } });
     await loadPeople();
   }
   async function remove(userId: string): Promise<void> {
-    await request(contract.removeMember, { params: { ...target(), userId } });
+    await request(memberContract.removeMember, { params: { ...target(), userId } });
     await loadPeople();
   }
   /** The secret is in this answer and nowhere else, this store included. */
-  async function makeToken(body: BodyInput<typeof contract.makeToken>): Promise<string> {
-    const { secret } = await request(contract.makeToken, { params: target(), body });
+  async function makeToken(body: BodyInput<typeof tokenContract.makeToken>): Promise<string> {
+    const { secret } = await request(tokenContract.makeToken, { params: target(), body });
     await loadTokens();
     return secret;
   }
   async function revoke(tokenId: string): Promise<void> {
-    await request(contract.revokeToken, { params: { ...target(), tokenId } });
+    await request(tokenContract.revokeToken, { params: { ...target(), tokenId } });
     await loadTokens();
   }
 

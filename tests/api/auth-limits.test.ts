@@ -1,6 +1,8 @@
 import { afterAll, beforeAll, beforeEach, describe, expect, it } from 'vitest';
 import * as contract from '../../shared/contracts/auth.ts';
-import { inviteMember, listAudit, makeToken } from '../../shared/contracts/station.ts';
+import { listAudit } from '../../shared/contracts/audit.ts';
+import { inviteMember } from '../../shared/contracts/member.ts';
+import { makeToken } from '../../shared/contracts/token.ts';
 import { connectDataSource, createDataSource } from '../../server/database/data-source.ts';
 import { callerAddress, createRateLimits } from '../../server/middleware/rate-limit.ts';
 import { createLogger } from '../../server/platform/logger.ts';

@@ -1,6 +1,6 @@
 import { afterAll, beforeAll, beforeEach, describe, expect, it } from 'vitest';
 import * as contract from '../../shared/contracts/auth.ts';
-import { inviteMember, listMembers, withdrawInvitation } from '../../shared/contracts/station.ts';
+import { inviteMember, listMembers, withdrawInvitation } from '../../shared/contracts/member.ts';
 import type { Role } from '../../shared/contracts/permission.ts';
 import { startServer, startTestApi, callApi, testPassword } from '../helpers/api.ts';
 import type { TestApi, TestReply } from '../helpers/api.ts';

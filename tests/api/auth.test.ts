@@ -1,7 +1,8 @@
 import jwt from 'jsonwebtoken';
 import { afterAll, beforeAll, beforeEach, describe, expect, it } from 'vitest';
 import * as contract from '../../shared/contracts/auth.ts';
-import { listAntennas, listMembers } from '../../shared/contracts/station.ts';
+import { listAntennas } from '../../shared/contracts/antenna.ts';
+import { listMembers } from '../../shared/contracts/member.ts';
 import { signAccessToken } from '../../server/middleware/authenticate.ts';
 import { startTestApi, testPassword } from '../helpers/api.ts';
 import type { TestApi, TestReply } from '../helpers/api.ts';

@@ -3,7 +3,7 @@ import { afterAll, beforeAll, beforeEach, describe, expect, it } from 'vitest';
 import { listDwellHistory, listNowOn, switchReceiver } from '../../shared/contracts/dwell.ts';
 import type { Dwell as DwellReply } from '../../shared/contracts/dwell.ts';
 import type { BodyInput } from '../../shared/contracts/endpoint.ts';
-import { makeToken } from '../../shared/contracts/station.ts';
+import { makeToken } from '../../shared/contracts/token.ts';
 import type { TokenScope } from '../../shared/contracts/permission.ts';
 import { Antenna } from '../../server/database/entities/antenna.ts';
 import { AuditEntry } from '../../server/database/entities/audit-entry.ts';

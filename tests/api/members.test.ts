@@ -3,17 +3,10 @@ import { readProfile } from '../../shared/contracts/auth.ts';
 import { listDwells, switchReceiver } from '../../shared/contracts/dwell.ts';
 import type { Role, TokenScope } from '../../shared/contracts/permission.ts';
 import { listSpots } from '../../shared/contracts/spot.ts';
-import {
-  changeMemberRole,
-  inviteMember,
-  listAntennas,
-  listAudit,
-  listMembers,
-  listTokens,
-  makeToken,
-  removeMember,
-  revokeToken,
-} from '../../shared/contracts/station.ts';
+import { listAntennas } from '../../shared/contracts/antenna.ts';
+import { listAudit } from '../../shared/contracts/audit.ts';
+import { changeMemberRole, inviteMember, listMembers, removeMember } from '../../shared/contracts/member.ts';
+import { listTokens, makeToken, revokeToken } from '../../shared/contracts/token.ts';
 import { startTestApi } from '../helpers/api.ts';
 import type { TestApi, TestReply } from '../helpers/api.ts';
 import { insertStation } from '../helpers/station-rows.ts';

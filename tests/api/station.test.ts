@@ -1,5 +1,9 @@
 import { afterAll, beforeAll, beforeEach, describe, expect, it } from 'vitest';
-import * as contract from '../../shared/contracts/station.ts';
+import * as antennaContract from '../../shared/contracts/antenna.ts';
+import * as feedContract from '../../shared/contracts/feed.ts';
+import * as positionContract from '../../shared/contracts/position.ts';
+import * as receiverContract from '../../shared/contracts/receiver.ts';
+import * as stationContract from '../../shared/contracts/station.ts';
 import { updateTrial, saveTrial } from '../../shared/contracts/comparison.ts';
 import type { Endpoint } from '../../shared/contracts/endpoint.ts';
 import { startTestApi } from '../helpers/api.ts';
@@ -60,8 +64,8 @@ const jobs = async (): Promise<string[]> =>
   ).map((row) => row.kind);
 
 describe('standing rules and position', () => {
-  const update = (body: CallOptions<typeof contract.updateStation>['body']) =>
-    call(contract.updateStation, { body });
+  const update = (body: CallOptions<typeof stationContract.updateStation>['body']) =>
+    call(stationContract.updateStation, { body });
 
   it.each([
     ['guard', { guardSeconds: 30 }],
@@ -155,7 +159,7 @@ describe('standing rules and position', () => {
     expect(errorsOf(zone)).toEqual([
       { path: 'body.timeZone', message: 'Give a time zone such as Europe/Dublin.' },
     ]);
-    expect((await call(contract.readStation)).body).toMatchObject({ name: 'Corrib Low Band Group' });
+    expect((await call(stationContract.readStation)).body).toMatchObject({ name: 'Corrib Low Band Group' });
   });
 });
 
@@ -173,18 +177,20 @@ describe('changes of one field', () => {
       inServiceFrom: '2026-10-01',
       inServiceTo: null,
     } as const;
-    const added = contract.addAntenna.reply.parse((await call(contract.addAntenna, { body: antenna })).body);
-    const changed = await call(contract.updateAntenna, {
+    const added = antennaContract.addAntenna.reply.parse(
+      (await call(antennaContract.addAntenna, { body: antenna })).body,
+    );
+    const changed = await call(antennaContract.updateAntenna, {
       params: { antennaId: added.id },
       body: { inServiceTo: '2026-11-30' },
     });
     expect(changed.body).toEqual({ id: added.id, ...antenna, inServiceTo: '2026-11-30' });
 
-    await call(contract.updateReceiver, {
+    await call(receiverContract.updateReceiver, {
       params: { receiverId: station.receiverId },
       body: { notes: 'on the shelf' },
     });
-    const receiver = await call(contract.updateReceiver, {
+    const receiver = await call(receiverContract.updateReceiver, {
       params: { receiverId: station.receiverId },
       body: { label: 'Barn' },
     });
@@ -197,8 +203,8 @@ describe('changes of one field', () => {
       loginCall: 'EI7QSB',
       enabled: false,
     };
-    const { id } = contract.addFeed.reply.parse((await call(contract.addFeed, { body: feed })).body);
-    const renamed = await call(contract.updateFeed, { params: { feedId: id }, body: { name: 'Spare' } });
+    const { id } = feedContract.addFeed.reply.parse((await call(feedContract.addFeed, { body: feed })).body);
+    const renamed = await call(feedContract.updateFeed, { params: { feedId: id }, body: { name: 'Spare' } });
     expect(renamed.body).toMatchObject({ ...feed, name: 'Spare' });
 
     const [antennaA, antennaB] = station.antennaIds;
@@ -217,13 +223,13 @@ describe('changes of one field', () => {
 describe('receivers', () => {
   it('cannot change their call sign once spots are filed under it, and can before', async () => {
     const rename = () =>
-      call(contract.updateReceiver, {
+      call(receiverContract.updateReceiver, {
         params: { receiverId: station.receiverId },
         body: { callSign: 'ei7qsc', label: 'Barn' },
       });
     expect((await rename()).body).toMatchObject({ callSign: 'EI7QSC', label: 'Barn' });
     await insertSpots();
-    const refused = await call(contract.updateReceiver, {
+    const refused = await call(receiverContract.updateReceiver, {
       params: { receiverId: station.receiverId },
       body: { callSign: 'EI7QSD', label: 'Loft' },
     });
@@ -241,22 +247,22 @@ describe('receivers', () => {
   });
 
   it('have one call sign each, are retired and come back', async () => {
-    const twin = await call(contract.addReceiver, { body: { callSign: 'EI7QSB', label: 'Twin' } });
+    const twin = await call(receiverContract.addReceiver, { body: { callSign: 'EI7QSB', label: 'Twin' } });
     expect([twin.status, errorsOf(twin)]).toEqual([
       409,
       [{ path: 'body.callSign', message: 'The station has a receiver with this call sign already.' }],
     ]);
     const at = { receiverId: station.receiverId };
-    const retired = await call(contract.updateReceiver, { params: at, body: { retired: true } });
-    const { retiredAt } = contract.updateReceiver.reply.parse(retired.body);
+    const retired = await call(receiverContract.updateReceiver, { params: at, body: { retired: true } });
+    const { retiredAt } = receiverContract.updateReceiver.reply.parse(retired.body);
     expect(Date.parse(retiredAt!)).toBeGreaterThan(Date.now() - 60_000);
-    expect((await call(contract.updateReceiver, { params: at, body: { retired: true } })).body).toMatchObject(
-      {
-        retiredAt,
-      },
-    );
     expect(
-      (await call(contract.updateReceiver, { params: at, body: { retired: false } })).body,
+      (await call(receiverContract.updateReceiver, { params: at, body: { retired: true } })).body,
+    ).toMatchObject({
+      retiredAt,
+    });
+    expect(
+      (await call(receiverContract.updateReceiver, { params: at, body: { retired: false } })).body,
     ).toMatchObject({
       retiredAt: null,
     });
@@ -270,17 +276,17 @@ describe('antennas', () => {
       `INSERT INTO dwell (station_id, receiver_id, antenna_id, starts_at, source) VALUES ($1, $2, $3, now(), 'hand')`,
       [station.stationId, station.receiverId, named],
     );
-    const refused = await call(contract.removeAntenna, { params: { antennaId: named } });
+    const refused = await call(antennaContract.removeAntenna, { params: { antennaId: named } });
     expect([refused.status, (refused.body as { detail: string }).detail]).toEqual([
       409,
       'The switch log names this antenna. Give it an end of service instead of removing it.',
     ]);
-    expect((await call(contract.removeAntenna, { params: { antennaId: unnamed } })).status).toBe(204);
-    expect((await call(contract.removeAntenna, { params: { antennaId: unnamed } })).status).toBe(404);
+    expect((await call(antennaContract.removeAntenna, { params: { antennaId: unnamed } })).status).toBe(204);
+    expect((await call(antennaContract.removeAntenna, { params: { antennaId: unnamed } })).status).toBe(404);
   });
 
   it('are refused with the field named', async () => {
-    const reply = await call(contract.addAntenna, {
+    const reply = await call(antennaContract.addAntenna, {
       body: {
         name: 'North-east',
         marker: 'ab',
@@ -301,10 +307,10 @@ describe('antennas', () => {
       'body.inServiceFrom': 'Give a date such as 2026-11-30.',
     });
     const body = { name: 'North-east', marker: 'N', kind: 'loop' } as const;
-    expect(errorsOf(await call(contract.addAntenna, { body }))).toEqual([
+    expect(errorsOf(await call(antennaContract.addAntenna, { body }))).toEqual([
       { path: 'body.name', message: 'The station has an antenna with this name already.' },
     ]);
-    const backwards = await call(contract.updateAntenna, {
+    const backwards = await call(antennaContract.updateAntenna, {
       params: { antennaId: station.antennaIds[0] },
       body: { inServiceFrom: '2026-11-30', inServiceTo: '2026-11-29' },
     });
@@ -321,26 +327,26 @@ describe('feeds', () => {
   it.each(['localhost', '127.0.0.1', '::1', '2130706433', '0:0:0:0:0:0:0:1', '169.254.1.1', 'a.localhost.'])(
     'refuse %s as a host, when made and when changed',
     async (host) => {
-      expect(errorsOf(await call(contract.addFeed, { body: body(host) }))).toEqual([
+      expect(errorsOf(await call(feedContract.addFeed, { body: body(host) }))).toEqual([
         { path: 'body.host', message: ownSentence },
       ]);
-      const { id } = contract.addFeed.reply.parse(
-        (await call(contract.addFeed, { body: body('feed.example.org') })).body,
+      const { id } = feedContract.addFeed.reply.parse(
+        (await call(feedContract.addFeed, { body: body('feed.example.org') })).body,
       );
-      const changed = await call(contract.updateFeed, { params: { feedId: id }, body: { host } });
+      const changed = await call(feedContract.updateFeed, { params: { feedId: id }, body: { host } });
       expect(errorsOf(changed)).toEqual([{ path: 'body.host', message: ownSentence }]);
     },
   );
 
   it.each(['192.168.1.20', '2001:db8::20', 'skimmer.example.org'])('take %s as a host', async (host) => {
-    const reply = await call(contract.addFeed, { body: body(host) });
+    const reply = await call(feedContract.addFeed, { body: body(host) });
     expect([reply.status, (reply.body as { host: string }).host]).toEqual([201, host]);
   });
 
   it('may stand on the server itself in demo mode', async () => {
     const { stationId } = await insertStation(demo.dataSource);
     const manager = await demo.addPerson(stationId, 'manager');
-    const reply = await demo.call(contract.addFeed, {
+    const reply = await demo.call(feedContract.addFeed, {
       params: { stationId },
       body: body('127.0.0.1'),
       token: manager.token,
@@ -349,7 +355,7 @@ describe('feeds', () => {
   });
 
   it('are refused with the field named, and go without taking spots along', async () => {
-    const wrong = await call(contract.addFeed, {
+    const wrong = await call(feedContract.addFeed, {
       body: { ...body('not a host'), port: 70_000, loginCall: '!' },
     });
     expect(Object.fromEntries(errorsOf(wrong)!.map((e) => [e.path, e.message]))).toEqual({
@@ -358,11 +364,11 @@ describe('feeds', () => {
       'body.loginCall': 'Give a call sign of letters and digits such as EI7QSB.',
     });
     await insertSpots();
-    const { id } = contract.addFeed.reply.parse(
-      (await call(contract.addFeed, { body: body('feed.example.org') })).body,
+    const { id } = feedContract.addFeed.reply.parse(
+      (await call(feedContract.addFeed, { body: body('feed.example.org') })).body,
     );
-    expect((await call(contract.removeFeed, { params: { feedId: id } })).status).toBe(204);
-    expect((await call(contract.removeFeed, { params: { feedId: id } })).status).toBe(404);
+    expect((await call(feedContract.removeFeed, { params: { feedId: id } })).status).toBe(204);
+    expect((await call(feedContract.removeFeed, { params: { feedId: id } })).status).toBe(404);
     const spots: unknown[] = await api.dataSource.query('SELECT 1 FROM spot WHERE station_id = $1', [
       station.stationId,
     ]);
@@ -370,15 +376,15 @@ describe('feeds', () => {
   });
 
   it('hand out their refused lines as CSV that no spreadsheet takes for a formula', async () => {
-    const { id } = contract.addFeed.reply.parse(
-      (await call(contract.addFeed, { body: body('feed.example.org') })).body,
+    const { id } = feedContract.addFeed.reply.parse(
+      (await call(feedContract.addFeed, { body: body('feed.example.org') })).body,
     );
     await api.dataSource.query(
       `INSERT INTO feed_refusal (station_id, feed_id, received_at, reason, raw)
        VALUES ($1, $2, '2026-11-30T18:05:00Z', 'The time is not one.', '=1+1,"x"')`,
       [station.stationId, id],
     );
-    const reply = await call(contract.downloadFeedRefusals, { params: { feedId: id } });
+    const reply = await call(feedContract.downloadFeedRefusals, { params: { feedId: id } });
     expect(reply.headers.get('content-type')).toMatch(/^text\/csv/);
     expect(reply.headers.get('content-disposition')).toContain('attachment');
     const [header, line] = reply.text.trim().split('\r\n');
@@ -390,21 +396,23 @@ describe('feeds', () => {
 describe('position corrections', () => {
   it('have the bearings made anew, and are refused twice or with a locator that is none', async () => {
     const body = { matches: 'call', pattern: 'ea8qsh', locator: 'il18rj', radiusKm: 20 } as const;
-    const added = await call(contract.addPositionOverride, { body });
+    const added = await call(positionContract.addPositionOverride, { body });
     expect([added.status, added.body]).toEqual([
       201,
       { id: expect.any(Number), ...body, pattern: 'EA8QSH', locator: 'IL18rj' },
     ]);
     expect(await jobs()).toEqual(['bearings']);
-    expect(errorsOf(await call(contract.addPositionOverride, { body }))).toEqual([
+    expect(errorsOf(await call(positionContract.addPositionOverride, { body }))).toEqual([
       { path: 'body.pattern', message: 'There is a correction for this already: withdraw it first.' },
     ]);
-    const wrong = await call(contract.addPositionOverride, {
+    const wrong = await call(positionContract.addPositionOverride, {
       body: { matches: 'prefix', pattern: 'E A', locator: 'XX99', radiusKm: -1 },
     });
     expect(errorsOf(wrong)!.map((e) => e.path)).toEqual(['body.pattern', 'body.locator', 'body.radiusKm']);
-    const { id } = contract.addPositionOverride.reply.parse(added.body);
-    expect((await call(contract.removePositionOverride, { params: { positionId: id } })).status).toBe(204);
+    const { id } = positionContract.addPositionOverride.reply.parse(added.body);
+    expect((await call(positionContract.removePositionOverride, { params: { positionId: id } })).status).toBe(
+      204,
+    );
     expect(await jobs()).toEqual(['bearings', 'bearings']);
   });
 
@@ -416,7 +424,7 @@ describe('position corrections', () => {
       ['contester', 403],
     ] as const) {
       const person = await api.addPerson(station.stationId, role);
-      const reply = await call(contract.addPositionOverride, { body, token: person.token });
+      const reply = await call(positionContract.addPositionOverride, { body, token: person.token });
       expect(reply.status, role).toBe(status);
     }
   });

@@ -2,7 +2,10 @@ import { saveTrial } from '../../shared/contracts/comparison.ts';
 import { applyDwellChanges } from '../../shared/contracts/dwell.ts';
 import type { BodyInput } from '../../shared/contracts/endpoint.ts';
 import { saveMapping, uploadImport } from '../../shared/contracts/import.ts';
-import * as station from '../../shared/contracts/station.ts';
+import * as feedContract from '../../shared/contracts/feed.ts';
+import * as memberContract from '../../shared/contracts/member.ts';
+import * as positionContract from '../../shared/contracts/position.ts';
+import * as tokenContract from '../../shared/contracts/token.ts';
 import type { TestApi, TestReply } from './api.ts';
 import type { StationRows } from './station-rows.ts';
 
@@ -191,7 +194,10 @@ export async function fillStations(api: TestApi, own: Manned, foreign: Manned): 
     form.append('file', new Blob(['time,receiver,call,freq,snr\n']), name);
     return form;
   };
-  const made = await api.call(station.makeToken, { ...as, body: { name: 'Foreign', scopes: ['spot:read'] } });
+  const made = await api.call(tokenContract.makeToken, {
+    ...as,
+    body: { name: 'Foreign', scopes: ['spot:read'] },
+  });
   const [antennaA, antennaB] = foreign.antennaIds;
   const ids: Ids = {
     receiverId: foreign.receiverId,
@@ -200,18 +206,21 @@ export async function fillStations(api: TestApi, own: Manned, foreign: Manned): 
     ownDwellId: applyDwellChanges.reply.parse(ownAdded.body).dwells[0]!.id,
     batchId,
     userId: foreign.userId,
-    tokenId: station.makeToken.reply.parse(made.body).token.id,
+    tokenId: tokenContract.makeToken.reply.parse(made.body).token.id,
     invitationId: idOf(
-      await api.call(station.inviteMember, { ...as, body: { email: 'foreign@x.example', role: 'operator' } }),
+      await api.call(memberContract.inviteMember, {
+        ...as,
+        body: { email: 'foreign@x.example', role: 'operator' },
+      }),
     ),
     feedId: idOf(
-      await api.call(station.addFeed, {
+      await api.call(feedContract.addFeed, {
         ...as,
         body: { name: 'Foreign', host: 'feed.example.org', port: 7300, loginCall: 'EI9QSF', enabled: false },
       }),
     ),
     positionId: idOf(
-      await api.call(station.addPositionOverride, {
+      await api.call(positionContract.addPositionOverride, {
         ...as,
         body: { matches: 'call', pattern: 'EI9QSF', locator: 'IO53' },
       }),

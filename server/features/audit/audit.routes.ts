@@ -1,4 +1,4 @@
-import { listAudit } from '../../../shared/contracts/station.ts';
+import { listAudit } from '../../../shared/contracts/audit.ts';
 import type { Deps } from '../../platform/deps.ts';
 import { inStation, route } from '../../platform/route.ts';
 import type { Route } from '../../platform/route.ts';

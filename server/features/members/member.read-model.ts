@@ -1,6 +1,6 @@
 import type { EntityManager } from 'typeorm';
 import type { z } from 'zod';
-import type { invitation, member } from '../../../shared/contracts/station.ts';
+import type { invitation, member } from '../../../shared/contracts/member.ts';
 
 type Member = z.input<typeof member>;
 type InvitationRow = z.input<typeof invitation>;

@@ -1,4 +1,4 @@
-import * as contract from '../../../shared/contracts/station.ts';
+import * as contract from '../../../shared/contracts/member.ts';
 import type { Deps } from '../../platform/deps.ts';
 import { inStation, route } from '../../platform/route.ts';
 import type { Route } from '../../platform/route.ts';

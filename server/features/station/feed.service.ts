@@ -1,6 +1,6 @@
 import type { EntityManager } from 'typeorm';
 import type { BodyOf } from '../../../shared/contracts/endpoint.ts';
-import type * as contract from '../../../shared/contracts/station.ts';
+import type * as contract from '../../../shared/contracts/feed.ts';
 import { Feed } from '../../database/entities/feed.ts';
 import { FeedHealth } from '../../database/entities/feed-health.ts';
 import { inTransaction } from '../../database/transaction.ts';

@@ -1,6 +1,6 @@
 import type { EntityManager } from 'typeorm';
 import type { BodyOf } from '../../../shared/contracts/endpoint.ts';
-import type { addPositionOverride } from '../../../shared/contracts/station.ts';
+import type { addPositionOverride } from '../../../shared/contracts/position.ts';
 import { parseLocator } from '../../../shared/radio/locator.ts';
 import { isRefusal } from '../../../shared/radio/place.ts';
 import { PositionOverride } from '../../database/entities/position-override.ts';

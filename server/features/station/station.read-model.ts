@@ -1,10 +1,8 @@
 import type { EntityManager } from 'typeorm';
-import type {
-  Antenna as AntennaReply,
-  Feed as FeedReply,
-  Receiver as ReceiverReply,
-  Station as StationReply,
-} from '../../../shared/contracts/station.ts';
+import type { Antenna as AntennaReply } from '../../../shared/contracts/antenna.ts';
+import type { Feed as FeedReply } from '../../../shared/contracts/feed.ts';
+import type { Receiver as ReceiverReply } from '../../../shared/contracts/receiver.ts';
+import type { Station as StationReply } from '../../../shared/contracts/station.ts';
 import { Antenna } from '../../database/entities/antenna.ts';
 import { Feed } from '../../database/entities/feed.ts';
 import { FeedHealth } from '../../database/entities/feed-health.ts';

@@ -1,4 +1,8 @@
-import * as contract from '../../../shared/contracts/station.ts';
+import * as antennaContract from '../../../shared/contracts/antenna.ts';
+import * as feedContract from '../../../shared/contracts/feed.ts';
+import * as positionContract from '../../../shared/contracts/position.ts';
+import * as receiverContract from '../../../shared/contracts/receiver.ts';
+import * as stationContract from '../../../shared/contracts/station.ts';
 import type { Deps } from '../../platform/deps.ts';
 import { answered, inStation, route } from '../../platform/route.ts';
 import type { Route } from '../../platform/route.ts';
@@ -19,72 +23,84 @@ export function stationRoutes(deps: Deps): Route[] {
   const manage = inStation('station:manage');
 
   return [
-    route(contract.readStation, { access: read }, async ({ params }) =>
+    route(stationContract.readStation, { access: read }, async ({ params }) =>
       readStation(manager, params.stationId),
     ),
     route(
-      contract.updateStation,
+      stationContract.updateStation,
       { access: manage, audit: 'station.update' },
       async ({ params, body, audit }) => service.update(params.stationId, body, audit),
     ),
 
-    route(contract.listReceivers, { access: read }, async ({ params }) => ({
+    route(receiverContract.listReceivers, { access: read }, async ({ params }) => ({
       items: await listReceivers(manager, params.stationId),
     })),
-    route(contract.addReceiver, { access: manage, audit: 'receiver.add' }, async ({ params, body, audit }) =>
-      service.addReceiver(params.stationId, body, audit),
+    route(
+      receiverContract.addReceiver,
+      { access: manage, audit: 'receiver.add' },
+      async ({ params, body, audit }) => service.addReceiver(params.stationId, body, audit),
     ),
     route(
-      contract.updateReceiver,
+      receiverContract.updateReceiver,
       { access: manage, audit: 'receiver.update' },
       async ({ params, body, audit }) =>
         service.updateReceiver(params.stationId, params.receiverId, body, audit),
     ),
 
-    route(contract.listAntennas, { access: read }, async ({ params }) => ({
+    route(antennaContract.listAntennas, { access: read }, async ({ params }) => ({
       items: await listAntennas(manager, params.stationId),
     })),
-    route(contract.addAntenna, { access: manage, audit: 'antenna.add' }, async ({ params, body, audit }) =>
-      service.addAntenna(params.stationId, body, audit),
+    route(
+      antennaContract.addAntenna,
+      { access: manage, audit: 'antenna.add' },
+      async ({ params, body, audit }) => service.addAntenna(params.stationId, body, audit),
     ),
     route(
-      contract.updateAntenna,
+      antennaContract.updateAntenna,
       { access: manage, audit: 'antenna.update' },
       async ({ params, body, audit }) =>
         service.updateAntenna(params.stationId, params.antennaId, body, audit),
     ),
-    route(contract.removeAntenna, { access: manage, audit: 'antenna.remove' }, async ({ params, audit }) =>
-      service.removeAntenna(params.stationId, params.antennaId, audit),
+    route(
+      antennaContract.removeAntenna,
+      { access: manage, audit: 'antenna.remove' },
+      async ({ params, audit }) => service.removeAntenna(params.stationId, params.antennaId, audit),
     ),
 
-    route(contract.listFeeds, { access: read }, async ({ params }) => ({
+    route(feedContract.listFeeds, { access: read }, async ({ params }) => ({
       items: await listFeeds(manager, params.stationId),
     })),
-    route(contract.addFeed, { access: manage, audit: 'feed.add' }, async ({ params, body, audit }) =>
+    route(feedContract.addFeed, { access: manage, audit: 'feed.add' }, async ({ params, body, audit }) =>
       feeds.add(params.stationId, body, audit),
     ),
-    route(contract.updateFeed, { access: manage, audit: 'feed.update' }, async ({ params, body, audit }) =>
-      feeds.update(params.stationId, params.feedId, body, audit),
+    route(
+      feedContract.updateFeed,
+      { access: manage, audit: 'feed.update' },
+      async ({ params, body, audit }) => feeds.update(params.stationId, params.feedId, body, audit),
     ),
-    route(contract.removeFeed, { access: manage, audit: 'feed.remove' }, async ({ params, audit }) =>
+    route(feedContract.removeFeed, { access: manage, audit: 'feed.remove' }, async ({ params, audit }) =>
       feeds.remove(params.stationId, params.feedId, audit),
     ),
-    route(contract.downloadFeedRefusals, { access: inStation('import:read') }, async ({ params, res }) => {
-      const rows = await feedRefusalRows(manager, params.stationId, params.feedId);
-      await sendCsv(res, `feed-${params.feedId}-refused.csv`, ['received_at', 'reason', 'raw'], rows);
-      return answered;
-    }),
+    route(
+      feedContract.downloadFeedRefusals,
+      { access: inStation('import:read') },
+      async ({ params, res }) => {
+        const rows = await feedRefusalRows(manager, params.stationId, params.feedId);
+        await sendCsv(res, `feed-${params.feedId}-refused.csv`, ['received_at', 'reason', 'raw'], rows);
+        return answered;
+      },
+    ),
 
-    route(contract.listPositionOverrides, { access: read }, async ({ params }) => ({
+    route(positionContract.listPositionOverrides, { access: read }, async ({ params }) => ({
       items: await listPositions(manager, params.stationId),
     })),
     route(
-      contract.addPositionOverride,
+      positionContract.addPositionOverride,
       { access: inStation('position:write'), audit: 'position.add' },
       async ({ params, body, actor, audit }) => positions.add(params.stationId, body, actor.userId, audit),
     ),
     route(
-      contract.removePositionOverride,
+      positionContract.removePositionOverride,
       { access: inStation('position:write'), audit: 'position.remove' },
       async ({ params, audit }) => positions.remove(params.stationId, params.positionId, audit),
     ),

@@ -1,6 +1,8 @@
 import type { EntityManager } from 'typeorm';
 import type { BodyOf } from '../../../shared/contracts/endpoint.ts';
-import type * as contract from '../../../shared/contracts/station.ts';
+import type * as antennaContract from '../../../shared/contracts/antenna.ts';
+import type * as receiverContract from '../../../shared/contracts/receiver.ts';
+import type * as stationContract from '../../../shared/contracts/station.ts';
 import { markAllDirty } from '../../database/dirty-blocks.ts';
 import { Antenna } from '../../database/entities/antenna.ts';
 import { Dwell } from '../../database/entities/dwell.ts';
@@ -30,7 +32,7 @@ export function createStationService(deps: Deps) {
   }
 
   return {
-    async update(stationId: number, body: BodyOf<typeof contract.updateStation>, audit: Audit) {
+    async update(stationId: number, body: BodyOf<typeof stationContract.updateStation>, audit: Audit) {
       return inTransaction(dataSource, async (manager) => {
         const station = await manager.findOne(Station, {
           where: { id: stationId },
@@ -67,7 +69,7 @@ export function createStationService(deps: Deps) {
       });
     },
 
-    async addReceiver(stationId: number, body: BodyOf<typeof contract.addReceiver>, audit: Audit) {
+    async addReceiver(stationId: number, body: BodyOf<typeof receiverContract.addReceiver>, audit: Audit) {
       return named('body.callSign', 'The station has a receiver with this call sign already.', () =>
         inTransaction(dataSource, async (manager) => {
           const row = await manager.save(manager.create(Receiver, { stationId, ...body }));
@@ -81,7 +83,7 @@ export function createStationService(deps: Deps) {
     async updateReceiver(
       stationId: number,
       id: number,
-      body: BodyOf<typeof contract.updateReceiver>,
+      body: BodyOf<typeof receiverContract.updateReceiver>,
       audit: Audit,
     ) {
       return named('body.callSign', 'The station has a receiver with this call sign already.', () =>
@@ -108,7 +110,7 @@ export function createStationService(deps: Deps) {
       );
     },
 
-    async addAntenna(stationId: number, body: BodyOf<typeof contract.addAntenna>, audit: Audit) {
+    async addAntenna(stationId: number, body: BodyOf<typeof antennaContract.addAntenna>, audit: Audit) {
       checkService(body.inServiceFrom, body.inServiceTo);
       return named('body.name', 'The station has an antenna with this name already.', () =>
         inTransaction(dataSource, async (manager) => {
@@ -123,7 +125,7 @@ export function createStationService(deps: Deps) {
     async updateAntenna(
       stationId: number,
       id: number,
-      body: BodyOf<typeof contract.updateAntenna>,
+      body: BodyOf<typeof antennaContract.updateAntenna>,
       audit: Audit,
     ) {
       return named('body.name', 'The station has an antenna with this name already.', () =>

@@ -1,5 +1,5 @@
 import type { z } from 'zod';
-import * as contract from '../../../shared/contracts/station.ts';
+import * as contract from '../../../shared/contracts/token.ts';
 import type { TokenScope } from '../../../shared/contracts/permission.ts';
 import type { ApiToken } from '../../database/entities/api-token.ts';
 import { inTransaction } from '../../database/transaction.ts';

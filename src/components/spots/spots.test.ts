@@ -1,7 +1,8 @@
 import { mount } from '@vue/test-utils';
 import { afterEach, describe, expect, it } from 'vitest';
 import type { SpotRow } from '../../../shared/contracts/spot.ts';
-import type { Antenna, Receiver } from '../../../shared/contracts/station.ts';
+import type { Antenna } from '../../../shared/contracts/antenna.ts';
+import type { Receiver } from '../../../shared/contracts/receiver.ts';
 import { everySpot } from './spot-filter.ts';
 import SpotFilters from './SpotFilters.vue';
 import SpotMap from './SpotMap.vue';

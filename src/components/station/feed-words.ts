@@ -1,4 +1,4 @@
-import type { Feed } from '../../../shared/contracts/station.ts';
+import type { Feed } from '../../../shared/contracts/feed.ts';
 import { formatAgo } from '../../styles/format.ts';
 
 export interface FeedWords {

@@ -1,4 +1,5 @@
-import type { Antenna, Feed } from '../../../shared/contracts/station.ts';
+import type { Antenna } from '../../../shared/contracts/antenna.ts';
+import type { Feed } from '../../../shared/contracts/feed.ts';
 
 /** What is asked about before it is done. */
 export type Doubt =

@@ -1,4 +1,5 @@
-import type { Antenna, Receiver } from '../../../shared/contracts/station.ts';
+import type { Antenna } from '../../../shared/contracts/antenna.ts';
+import type { Receiver } from '../../../shared/contracts/receiver.ts';
 import { countOf, formatDuration, formatShare, formatUtc, formatUtcTime } from '../../styles/format.ts';
 import type { LaneItem } from './lane.ts';
 

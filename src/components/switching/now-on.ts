@@ -1,5 +1,6 @@
 import type { Dwell } from '../../../shared/contracts/dwell.ts';
-import type { Antenna, Receiver } from '../../../shared/contracts/station.ts';
+import type { Antenna } from '../../../shared/contracts/antenna.ts';
+import type { Receiver } from '../../../shared/contracts/receiver.ts';
 
 /** What a receiver's panel shows. `dwell` undefined: not known (yet). */
 export interface NowOnReceiver {

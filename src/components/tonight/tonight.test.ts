@@ -1,7 +1,7 @@
 import { mount } from '@vue/test-utils';
 import { nextTick } from 'vue';
 import { describe, expect, it } from 'vitest';
-import type { Antenna } from '../../../shared/contracts/station.ts';
+import type { Antenna } from '../../../shared/contracts/antenna.ts';
 import type { LivePair } from '../../../shared/contracts/tonight.ts';
 import { adviceLimitDb } from './advice.ts';
 import type { BandAdvice } from './advice.ts';
