@@ -184,7 +184,9 @@ function createFieldReaders(mapping: SpotMapping, context: ReadingContext, takeR
   const readCall = createCallReader();
   const readFreq = remember((text) => readFrequency(text, unit, decimalComma));
   const readSnr = remember(readSnrDb);
-  const readSpeed = remember(readSpeedWpm);
+  // Tables fill a column that must not be empty with 0: that is no speed, and no reason to lose the spot.
+  const zeroIsNone = mapping.layout === 'table';
+  const readSpeed = remember((text) => (zeroIsNone && /^0+$/.test(text.trim()) ? null : readSpeedWpm(text)));
   const readMode = remember(modeOf);
 
   function receiver(name: string | null): number | FieldRefusal | 'other receiver' {
