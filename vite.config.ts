@@ -22,6 +22,9 @@ export default defineConfig({
   },
   test: {
     maxWorkers: 2,
+    // For hangs only: a busy machine must not fail a test that is right.
+    testTimeout: 30_000,
+    hookTimeout: 30_000,
     projects: [
       {
         extends: true,
