@@ -188,7 +188,7 @@ describe('an import whose database is killed', { timeout: 180_000 }, () => {
       return row;
     };
     await vi.waitFor(async () => expect((await read()).state).toBe('done'), {
-      timeout: 50_000,
+      timeout: 120_000,
       interval: 250,
     });
     expect(events).toBeGreaterThan(3);

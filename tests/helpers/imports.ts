@@ -40,7 +40,8 @@ export function startJobRunner(
     workerName,
     pollSeconds: 0.1,
     heartbeatSeconds: 0.2,
-    deadAfterSeconds: 1,
+    // Long enough for a busy machine: a worker taken for dead by mistake costs the job one of its tries.
+    deadAfterSeconds: 5,
     retrySeconds: 0.2,
   });
   runner.start();
