@@ -264,6 +264,36 @@ describe('the job runner', () => {
     });
     await until(id, { state: 'done' });
   });
+
+  it('does a job again whose end could not be stored for too long', async () => {
+    await dataSource.query(`
+      CREATE FUNCTION refuse_end() RETURNS trigger LANGUAGE plpgsql AS
+        $$ BEGIN RAISE 'no end today'; END $$;
+      CREATE TRIGGER no_end BEFORE UPDATE ON job FOR EACH ROW WHEN (NEW.state = 'done') EXECUTE FUNCTION refuse_end()`);
+    const id = await enqueue();
+    const unstored = new Promise<void>((resolve) => {
+      const deaf = createLogger('test', 'silent');
+      const listening = Object.assign(Object.create(deaf) as typeof deaf, {
+        child: () => deaf,
+        error: (_about: object, message: string) => {
+          if (message === 'a job could not be ended') resolve();
+        },
+      });
+      let runs = 0;
+      run(
+        {
+          import: async () => {
+            runs++;
+            if (runs > 1) await dataSource.query('DROP TRIGGER IF EXISTS no_end ON job');
+          },
+        },
+        { deadAfterSeconds: 0.5, logger: listening },
+      );
+    });
+    await unstored;
+    // Its heart has stopped: the job is put back, and ends once its end can be stored.
+    await until(id, { state: 'done', attempts: 2 });
+  });
 });
 
 describe('the bearings job', () => {

@@ -104,14 +104,18 @@ export function createJobRunner(options: JobRunnerOptions): JobRunner {
     } catch (error) {
       failure = error ?? new Error('The job failed without saying why.');
     }
-    await progress.finish();
-    const end = endOf(job, failure, controller.signal);
-    if (end === null) log.warn("the job is another worker's now");
-    else {
-      await endUntilStored(job, end, log);
-      log.info({ end: end.state, err: failure ?? undefined }, 'a job ended');
+    try {
+      await progress.finish();
+      const end = endOf(job, failure, controller.signal);
+      if (end === null) log.warn("the job is another worker's now");
+      else {
+        await endUntilStored(job, end, log);
+        log.info({ end: end.state, err: failure ?? undefined }, 'a job ended');
+      }
+    } finally {
+      // Also when its end could not be stored: a heart that beats on for nobody keeps the job from being put back.
+      stopHeart();
     }
-    stopHeart();
   }
 
   /** The registry is typed per kind; a claimed row is of one kind, known only now. */
