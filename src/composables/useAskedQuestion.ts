@@ -9,7 +9,7 @@ import {
   sameQuestion,
 } from '../../shared/contracts/comparison-url.ts';
 import type { QuestionDraft } from '../../shared/contracts/comparison-url.ts';
-import { cellTitle } from '../components/comparison/cell-words.ts';
+import { cellTitle } from '../../shared/pictures/cell-words.ts';
 import { narrowQuestion } from '../components/comparison/narrow-question.ts';
 import { useComparisonStore } from '../stores/comparison.ts';
 import { useStationStore } from '../stores/station.ts';

@@ -7,7 +7,7 @@ import type { SwitchOutcome, SwitchRequest } from '../components/switching/now-o
 import { useClockStore } from '../stores/clock.ts';
 import { useStationStore } from '../stores/station.ts';
 import { useSwitchingStore } from '../stores/switching.ts';
-import { formatUtcTime } from '../styles/format.ts';
+import { formatUtcTime } from '../../shared/format.ts';
 
 export interface ReceiverSwitching {
   /** By receiver: what became of its last switch. */

@@ -5,7 +5,7 @@ import { createPinia, setActivePinia } from 'pinia';
 import { afterEach, beforeEach, describe, expect, it, vi } from 'vitest';
 import { setApiBase } from '../api/url.ts';
 import { takeAccess } from '../api/access.ts';
-import { fixtureAnswer } from '../components/comparison/answer.fixture.ts';
+import { fixtureAnswer } from '../../shared/pictures/answer.fixture.ts';
 import { useComparisonStore } from './comparison.ts';
 import { useTrialsStore } from './trials.ts';
 

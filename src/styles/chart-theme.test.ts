@@ -1,5 +1,6 @@
 import { afterEach, describe, expect, it } from 'vitest';
-import { chartTheme, differenceColour, readChartTokens } from './chart-theme.ts';
+import { chartTheme, differenceColour } from '../../shared/pictures/chart-tokens.ts';
+import { readChartTokens } from './chart-theme.ts';
 
 const root = document.documentElement;
 afterEach(() => root.removeAttribute('style'));

@@ -2,9 +2,15 @@ import { Body, Observer, SearchRiseSet } from 'astronomy-engine';
 import fc from 'fast-check';
 import { describe, expect, it } from 'vitest';
 import { openQuestion } from '../../../shared/contracts/comparison-url.ts';
-import { cell, fixtureAnswer } from './answer.fixture.ts';
+import { cell, fixtureAnswer } from '../../../shared/pictures/answer.fixture.ts';
 import { addDays, addMonths, clickNight, weeksOf } from './calendar.ts';
-import { betterWords, cellWords, hourWords, lightsUp, pictureSummary } from './cell-words.ts';
+import {
+  betterWords,
+  cellWords,
+  hourWords,
+  lightsUp,
+  pictureSummary,
+} from '../../../shared/pictures/cell-words.ts';
 import { pointAt, sectorAt, sectorsBetween } from './compass.ts';
 import { halfWeightWords, heardOnlyWords, pText } from './fairness-words.ts';
 import { blanksOf, narrowQuestion } from './narrow-question.ts';

@@ -1,5 +1,5 @@
 import type { ComparisonAnswer } from '../../../shared/contracts/comparison.ts';
-import { countOf, formatNumber, THIN_SPACE } from '../../styles/format.ts';
+import { countOf, formatNumber, THIN_SPACE } from '../../../shared/format.ts';
 
 /** A p value as people can use it: small ones as a limit, never as zero. */
 export function pText(p: number | null): string {

@@ -1,4 +1,4 @@
-import { countOf, formatAgo } from '../../styles/format.ts';
+import { countOf, formatAgo } from '../../../shared/format.ts';
 
 export interface FeedHint {
   level: 'good' | 'bad';

@@ -1,7 +1,7 @@
 import { nightIndexOf } from '../../../shared/radio/night.ts';
 import type { Place } from '../../../shared/radio/place.ts';
 import { nightSun } from '../../../shared/radio/sun.ts';
-import { formatDuration } from '../../styles/format.ts';
+import { formatDuration } from '../../../shared/format.ts';
 
 /** The next turn of the sun in words: "sunset in 1 h 12 min", "sunrise in 45 min", or that there is none. */
 export function sunWords(nowMs: number, place: Place): string {

@@ -1,5 +1,5 @@
 import type { ImportKind, ImportRecord } from '../../../shared/contracts/import.ts';
-import { countOf, formatCount, formatUtc } from '../../styles/format.ts';
+import { countOf, formatCount, formatUtc } from '../../../shared/format.ts';
 
 export const kindWords: Readonly<Record<ImportKind, string>> = { spots: 'Spots', dwells: 'Switch log' };
 

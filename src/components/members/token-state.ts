@@ -1,4 +1,4 @@
-import { formatAgo } from '../../styles/format.ts';
+import { formatAgo } from '../../../shared/format.ts';
 
 interface Token {
   expiresAt: string;

@@ -1,5 +1,5 @@
 import type { Feed } from '../../../shared/contracts/feed.ts';
-import { formatAgo } from '../../styles/format.ts';
+import { formatAgo } from '../../../shared/format.ts';
 
 export interface FeedWords {
   /** One shape a state, so that no state is told by colour alone. */

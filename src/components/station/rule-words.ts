@@ -1,6 +1,6 @@
 import type { Station } from '../../../shared/contracts/station.ts';
 import type { StationDraft } from './station-drafts.ts';
-import { THIN_SPACE, formatNumber } from '../../styles/format.ts';
+import { THIN_SPACE, formatNumber } from '../../../shared/format.ts';
 
 type RuleKey =
   'guardSeconds' | 'blockMinutes' | 'windowSeconds' | 'freqToleranceKhz' | 'marginDb' | 'sectorCount';

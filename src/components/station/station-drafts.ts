@@ -5,7 +5,7 @@ import type { addPositionOverride } from '../../../shared/contracts/position.ts'
 import type { Receiver, addReceiver } from '../../../shared/contracts/receiver.ts';
 import type { Station, updateStation } from '../../../shared/contracts/station.ts';
 import { feetToMetres, metresToFeet } from '../../../shared/radio/convert.ts';
-import type { LengthUnit } from '../../styles/format.ts';
+import type { LengthUnit } from '../../../shared/format.ts';
 
 /** What is typed: texts, so that a half-written number survives; lengths in the reader's unit. */
 export interface AntennaDraft {

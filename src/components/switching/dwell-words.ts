@@ -1,6 +1,6 @@
 import type { Antenna } from '../../../shared/contracts/antenna.ts';
 import type { Receiver } from '../../../shared/contracts/receiver.ts';
-import { countOf, formatDuration, formatShare, formatUtc, formatUtcTime } from '../../styles/format.ts';
+import { countOf, formatDuration, formatShare, formatUtc, formatUtcTime } from '../../../shared/format.ts';
 import type { LaneItem } from './lane.ts';
 
 type Names = ReadonlyMap<number, Pick<Antenna, 'name' | 'marker'>>;

@@ -1,5 +1,5 @@
 import type { DwellPreview } from '../../../shared/contracts/dwell.ts';
-import { countOf } from '../../styles/format.ts';
+import { countOf } from '../../../shared/format.ts';
 
 /** What a correction would change, a line each; a line that would say "0" is left out. */
 export function previewLines(preview: DwellPreview): string[] {

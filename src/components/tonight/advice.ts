@@ -1,5 +1,5 @@
 import type { TonightAnswer } from '../../../shared/contracts/tonight.ts';
-import { formatDb, formatDbInterval } from '../../styles/format.ts';
+import { formatDb, formatDbInterval } from '../../../shared/format.ts';
 
 export type BandAdvice = TonightAnswer['bands'][number];
 

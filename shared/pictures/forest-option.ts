@@ -1,6 +1,6 @@
 import type { CustomSeriesOption } from 'echarts/charts';
-import type { ComparisonCell } from '../../../shared/contracts/comparison.ts';
-import { formatDb, formatDbInterval } from '../../styles/format.ts';
+import type { ComparisonCell } from '../contracts/comparison.ts';
+import { formatDb, formatDbInterval } from '../format.ts';
 import { cellTitle, cellWords, lightsUp } from './cell-words.ts';
 import { differenceAxis, differenceGround, litLine, overlay, verticalLine } from './picture.ts';
 import type { Picture, PictureContext } from './picture.ts';

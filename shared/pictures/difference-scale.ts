@@ -1,4 +1,4 @@
-import type { ComparisonAnswer } from '../../../shared/contracts/comparison.ts';
+import type { ComparisonAnswer } from '../contracts/comparison.ts';
 
 /** The one dB axis of all four pictures and of the verdict: symmetric about zero. */
 export interface DifferenceScale {

@@ -1,6 +1,6 @@
 import type { CustomSeriesOption } from 'echarts/charts';
-import type { ComparisonAnswer } from '../../../shared/contracts/comparison.ts';
-import { countOf, formatDb, formatDbInterval, formatNumber, formatSigned } from '../../styles/format.ts';
+import type { ComparisonAnswer } from '../contracts/comparison.ts';
+import { countOf, formatDb, formatDbInterval, formatNumber, formatSigned } from '../format.ts';
 import { differenceAxis, differenceGround, litLine, overlay, verticalLine } from './picture.ts';
 import type { Picture, PictureContext } from './picture.ts';
 

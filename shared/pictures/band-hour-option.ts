@@ -1,7 +1,7 @@
 import type { CustomSeriesOption } from 'echarts/charts';
-import type { ComparisonAnswer, ComparisonCell } from '../../../shared/contracts/comparison.ts';
-import { hatchDecal } from '../../styles/chart-theme.ts';
-import { formatBand, formatSigned } from '../../styles/format.ts';
+import type { ComparisonAnswer, ComparisonCell } from '../contracts/comparison.ts';
+import { hatchDecal } from './chart-tokens.ts';
+import { formatBand, formatSigned } from '../format.ts';
 import { cellTitle, cellWords, hourLabel, lightsUp } from './cell-words.ts';
 import { cellStyle, colourKey, colourKeyHeightPx, inkOn, overlay } from './picture.ts';
 import type { Picture, PictureContext } from './picture.ts';

@@ -1,10 +1,9 @@
 import type { CustomSeriesOption } from 'echarts/charts';
 import type { GridComponentOption } from 'echarts/components';
 import type { ComposeOption } from 'echarts/core';
-import type { ComparisonAnswer, ComparisonCell } from '../../../shared/contracts/comparison.ts';
-import type { ChartTokens } from '../../styles/chart-theme.ts';
-import { differenceColour } from '../../styles/chart-theme.ts';
-import { formatSigned } from '../../styles/format.ts';
+import type { ComparisonAnswer, ComparisonCell } from '../contracts/comparison.ts';
+import { differenceColour, type ChartTokens } from './chart-tokens.ts';
+import { formatSigned } from '../format.ts';
 import type { DifferenceScale } from './difference-scale.ts';
 
 export type PictureOption = ComposeOption<CustomSeriesOption | GridComponentOption>;

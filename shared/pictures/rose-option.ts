@@ -1,7 +1,7 @@
 import type { CustomSeriesOption } from 'echarts/charts';
-import type { ComparisonCell } from '../../../shared/contracts/comparison.ts';
-import { hatchDecal } from '../../styles/chart-theme.ts';
-import { formatSigned } from '../../styles/format.ts';
+import type { ComparisonCell } from '../contracts/comparison.ts';
+import { hatchDecal } from './chart-tokens.ts';
+import { formatSigned } from '../format.ts';
 import { cellTitle, cellWords, lightsUp } from './cell-words.ts';
 import { cellStyle, colourKey, colourKeyHeightPx, inkOn } from './picture.ts';
 import type { Picture, PictureContext } from './picture.ts';

@@ -2,7 +2,7 @@
  * How numbers, times and lengths are written everywhere on the screen and in exports for people: a real minus
  * sign, a thin space before the unit, intervals as "1.1 to 2.5 dB", times in UTC with a Z.
  */
-import { metresToFeet } from '../../shared/radio/convert.ts';
+import { metresToFeet } from './radio/convert.ts';
 
 export const MINUS = '\u2212';
 export const THIN_SPACE = '\u2009';

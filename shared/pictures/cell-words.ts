@@ -1,13 +1,6 @@
-import type { ComparisonAnswer, ComparisonCell } from '../../../shared/contracts/comparison.ts';
-import { dateText, sectorsText } from '../../../shared/contracts/comparison-sentence.ts';
-import {
-  countOf,
-  formatBand,
-  formatDb,
-  formatDbInterval,
-  formatNumber,
-  formatSigned,
-} from '../../styles/format.ts';
+import type { ComparisonAnswer, ComparisonCell } from '../contracts/comparison.ts';
+import { dateText, sectorsText } from '../contracts/comparison-sentence.ts';
+import { countOf, formatBand, formatDb, formatDbInterval, formatNumber, formatSigned } from '../format.ts';
 
 type HourBasis = ComparisonAnswer['bandHours']['basis'];
 

@@ -1,5 +1,5 @@
-import type { ComparisonAnswer, ComparisonCell } from '../../../shared/contracts/comparison.ts';
-import type { ChartTokens } from '../../styles/chart-theme.ts';
+import type { ComparisonAnswer, ComparisonCell } from '../contracts/comparison.ts';
+import type { ChartTokens } from './chart-tokens.ts';
 
 /** An invented answer for tests and screenshots: shaped like a real one, computed by no statistics. */
 export function fixtureAnswer(overrides: Partial<ComparisonAnswer> = {}): ComparisonAnswer {

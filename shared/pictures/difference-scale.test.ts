@@ -1,5 +1,5 @@
 import { describe, expect, it } from 'vitest';
-import { comparisonAnswer } from '../../../shared/contracts/comparison.ts';
+import { comparisonAnswer } from '../contracts/comparison.ts';
 import { cell, fixtureAnswer } from './answer.fixture.ts';
 import { differenceScale, placeOnScale, scaleTicks } from './difference-scale.ts';
 
