@@ -24,6 +24,9 @@ export const permissions = {
   'comparison:prepare': ['manager', 'analyst'],
   'trial:read': ['manager', 'operator', 'analyst', 'contester'],
   'trial:write': ['manager', 'analyst'],
+  'finding:read': ['manager', 'operator', 'analyst', 'contester'],
+  'finding:write': ['manager', 'analyst'],
+  'finding:share': ['manager', 'analyst'],
   'job:read': ['manager', 'operator', 'analyst'],
   'job:cancel': ['manager', 'operator', 'analyst'],
 } as const satisfies Record<string, readonly Role[]>;
