@@ -26,6 +26,9 @@ const permissionDoes: Record<Permission, string> = {
   'comparison:prepare': 'compare under other rules than the standing ones',
   'trial:read': 'read trials',
   'trial:write': 'save, change and put away trials',
+  'finding:read': 'read findings',
+  'finding:write': 'freeze findings and record decisions',
+  'finding:share': 'share findings with guests',
   'job:read': 'see work in the background',
   'job:cancel': 'stop work in the background',
 };
