@@ -1,5 +1,5 @@
 import type { ComparisonQuestion, PairingRulesInput } from '../contracts/comparison.ts';
-import type { HeardOnlyColumns, UnitColumns } from '../pairing/index.ts';
+import type { HeardOnlyColumns, SnrLevels, UnitColumns } from '../pairing/index.ts';
 
 /** Where a call is, seen from the station. Null: no bearing (maritime mobile, unknown prefix). */
 export interface CallFacts {
@@ -30,6 +30,7 @@ export interface NightTally {
     untagged: number;
   }[];
   doubles: number;
+  levels: SnrLevels[];
   /** Seconds that a receiver listened on an antenna outside guards. */
   listening: { receiver: number; antenna: number; seconds: number }[];
 }

@@ -105,6 +105,16 @@ export interface TagTally {
   untagged: number;
 }
 
+/** Tagged spots of one receiver on one band by their SNR. */
+export interface SnrLevels {
+  receiver: number;
+  band: number;
+  /** SNR of the first count, dB. */
+  lowestDb: number;
+  /** Spots at `lowestDb`, one decibel above it, and so on. */
+  spots: number[];
+}
+
 /** Time that a receiver listened on an antenna in a block, guards left out. */
 export interface ListeningColumns {
   receiver: Int32Array;
@@ -119,6 +129,7 @@ export interface PairingResult {
   /** Grouped as `units`. */
   heardOnly: HeardOnlyColumns;
   tallies: TagTally[];
+  levels: SnrLevels[];
   /** Spots left out because another one equals them in receiver, second, call and frequency. */
   doubles: number;
   /** Matches over all antenna pairs: the sum of `countA` over the simultaneous units. */

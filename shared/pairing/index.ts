@@ -9,6 +9,7 @@ export {
   type ListeningColumns,
   type PairingResult,
   type PairingWindow,
+  type SnrLevels,
   type SpotColumns,
   type TagTally,
   type UnitColumns,

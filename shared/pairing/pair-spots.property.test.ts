@@ -329,6 +329,8 @@ describe('pairSpots against the plainest reading of the rules', () => {
           const count = (tallies: typeof whole.tallies) =>
             tallies.map((t) => t.tagged + t.guarded + t.untagged);
           expect(sum(parts.flatMap((part) => count(part.tallies)))).toBe(sum(count(whole.tallies)));
+          const levels = (of: typeof whole.levels) => sum(of.flatMap((row) => row.spots));
+          expect(sum(parts.map((part) => levels(part.levels)))).toBe(levels(whole.levels));
         },
       ),
       { numRuns: 200 },

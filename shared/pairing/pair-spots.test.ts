@@ -275,6 +275,25 @@ describe('counts beside the units', () => {
     ]);
   });
 
+  it('counts tagged spots by receiver, band and SNR', () => {
+    const dwells = [dwell(1, A, -600, 450), dwell(1, B, 450), dwell(2, A, -600)];
+    const spots = [
+      spot(1, 100, 9),
+      spot(1, 200, 12, { call: 7 }),
+      spot(1, 700, 9),
+      // In the guard after the switch, and without a dwell: neither counts.
+      spot(1, 455, 3),
+      spot(3, 100, 3),
+      spot(2, 300, -4),
+      spot(2, 350, 9, { band: 80, freq100Hz: 35_100 }),
+    ];
+    expect(pair(spots, dwells).levels).toEqual([
+      { receiver: 1, band: 160, lowestDb: 9, spots: [2, 0, 0, 1] },
+      { receiver: 2, band: 80, lowestDb: 9, spots: [1] },
+      { receiver: 2, band: 160, lowestDb: -4, spots: [1] },
+    ]);
+  });
+
   it('takes spots equal in receiver, second, call and frequency for one, the earliest', () => {
     const dwells = [dwell(1, A, -600, 450), dwell(1, B, 450)];
     const spots = [

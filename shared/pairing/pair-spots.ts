@@ -9,6 +9,7 @@ import {
 } from './columns.ts';
 import { indexDwells, type DwellIndex } from './dwell-index.ts';
 import { emptyGroup, numberSides, type Group } from './group.ts';
+import { levelCounts, type LevelCounts } from './levels.ts';
 import { orderSpots, settleTies } from './order.ts';
 import { heardOnlyRows, unitRows } from './rows.ts';
 import { checkRules, type PairingRules } from './rules.ts';
@@ -59,7 +60,8 @@ export function pairSpots(
   const matcher = simultaneousMatcher(sides, rules, range, capacity, units);
   const summary = blockSummary(sides, range, listening, units, heardOnly);
   const tallies = tagTallies(index.sides);
-  const gatherer = groupGatherer(input, tags, index, range, capacity, tallies);
+  const levels = levelCounts(index.sides);
+  const gatherer = groupGatherer(input, tags, index, range, capacity, tallies, levels);
 
   const group = emptyGroup(capacity);
   let from = 0;
@@ -75,6 +77,7 @@ export function pairSpots(
     units: units.finish(sides.antennas),
     heardOnly: heardOnly.finish(sides.antennas),
     tallies: tallies.rows(),
+    levels: levels.rows(),
     doubles: gatherer.doubles(),
     matches,
     listening: listening.columns(),
@@ -122,6 +125,7 @@ function groupGatherer(
   range: BlockRange,
   capacity: number,
   tallies: TagTallies,
+  levels: LevelCounts,
 ): GroupGatherer {
   let doubles = 0;
   // Receiver and frequency of the spots of the present second, guarded and untagged ones too.
@@ -168,7 +172,10 @@ function groupGatherer(
           group.freq100Hz[at] = freq100Hz;
           group.snrDb[at] = spots.snrDb[row]!;
           group.speedWpm[at] = spots.speedWpm[row]!;
-          if (counts) tallies.addTagged(side, group.band);
+          if (counts) {
+            tallies.addTagged(side, group.band);
+            levels.add(side, group.band, group.snrDb[at]);
+          }
         } else if (counts) {
           if (tag === GUARDED) tallies.addGuarded(index.side[tags.position[row]!]!, group.band);
           else tallies.addUntagged(receiver, group.band);

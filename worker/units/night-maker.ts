@@ -160,5 +160,10 @@ function tallyOf(result: PairingResult): NightTally {
     row.seconds += seconds[i]!;
     bySide.set(id, row);
   }
-  return { spots: result.tallies, doubles: result.doubles, listening: [...bySide.values()] };
+  return {
+    spots: result.tallies,
+    doubles: result.doubles,
+    levels: result.levels,
+    listening: [...bySide.values()],
+  };
 }

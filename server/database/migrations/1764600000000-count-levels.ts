@@ -1,0 +1,21 @@
+import type { MigrationInterface, QueryRunner } from 'typeorm';
+
+/**
+ * The tally of a night now counts its spots by SNR, which the censored view reads a receiver's limit from.
+ * Units are a cache: one hour of each night is marked, and the worker makes the whole night anew.
+ */
+export class CountLevels1764600000000 implements MigrationInterface {
+  async up(queryRunner: QueryRunner): Promise<void> {
+    await queryRunner.query(`
+      INSERT INTO dirty_block (station_id, starts_at)
+      SELECT DISTINCT n.station_id, date_trunc('hour',
+        (n.night + interval '24 hours' - s.longitude_deg / 15 * interval '1 hour') AT TIME ZONE 'UTC')
+      FROM unit_night n JOIN station s ON s.id = n.station_id
+      ON CONFLICT (station_id, starts_at) DO UPDATE SET marked_at = now()`);
+  }
+
+  /** The program before does not read the counts: nothing to take down. */
+  async down(): Promise<void> {
+    return Promise.resolve();
+  }
+}
