@@ -27,6 +27,9 @@ import { DirtyBlock } from './dirty-block.ts';
 import { UnitPack } from './unit-pack.ts';
 import { UnitNight } from './unit-night.ts';
 import { Trial } from './trial.ts';
+import { Finding } from './finding.ts';
+import { FindingDecision } from './finding-decision.ts';
+import { FindingShare } from './finding-share.ts';
 import { AuditEntry } from './audit-entry.ts';
 
 /** Listed by hand, like the migrations; a table without an entity fails the drift check. */
@@ -60,6 +63,9 @@ export const entities = [
   UnitPack,
   UnitNight,
   Trial,
+  Finding,
+  FindingDecision,
+  FindingShare,
   AuditEntry,
 ];
 
@@ -93,5 +99,8 @@ export {
   UnitPack,
   UnitNight,
   Trial,
+  Finding,
+  FindingDecision,
+  FindingShare,
   AuditEntry,
 };
