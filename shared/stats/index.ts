@@ -1,5 +1,6 @@
 export type { Numbers } from './arguments.ts';
 export * from './benjamini-hochberg.ts';
+export * from './censored-mean.ts';
 export { clusterIds, pairClusters, type ClusterIds } from './cluster-ids.ts';
 export * from './cluster-mean.ts';
 export * from './cluster-regression.ts';
@@ -7,6 +8,7 @@ export type { Design } from './design.ts';
 export * from './equivalence.ts';
 export * from './hodges-lehmann.ts';
 export * from './intervals.ts';
+export * from './ladder.ts';
 export * from './mcnemar.ts';
 export * from './paired-t.ts';
 export * from './random.ts';

@@ -56,15 +56,20 @@ export function normalDensity(z: number): number {
   return Math.exp(-0.5 * z * z) / Math.sqrt(2 * Math.PI);
 }
 
+/** P(Z > z) exp(z^2 / 2) for z above the centre: still a number where the tail itself has run out. */
+function scaledTail(z: number): number {
+  if (z <= 5.656854249492381) return ratio(middle, z);
+  const s = 1 / (z * z);
+  return (1 / Math.sqrt(2 * Math.PI) - s * ratio(far, s)) / z;
+}
+
 /** P(Z > z) for z above the centre. */
 function tailBeyond(z: number): number {
   if (z > 38.6) return 0;
   // Squaring a value of 4 bits is exact, so the large part of the exponent carries no rounding error.
   const coarse = Math.trunc(z * 16) / 16;
   const decay = Math.exp(-0.5 * coarse * coarse) * Math.exp(-0.5 * (z - coarse) * (z + coarse));
-  if (z <= 5.656854249492381) return decay * ratio(middle, z);
-  const s = 1 / (z * z);
-  return (decay * (1 / Math.sqrt(2 * Math.PI) - s * ratio(far, s))) / z;
+  return decay * scaledTail(z);
 }
 
 /** P(Z > z): the upper tail itself, never one minus the rest. */
@@ -72,6 +77,12 @@ export function normalUpper(z: number): number {
   if (Number.isNaN(z)) throw new RangeError('z must be a number, got NaN');
   if (Math.abs(z) <= centreLimit) return 0.5 - fromCentre(z);
   return z > 0 ? tailBeyond(z) : 1 - tailBeyond(-z);
+}
+
+/** Density over upper tail at z (inverse Mills ratio), about z + 1 / z far out. */
+export function normalHazard(z: number): number {
+  if (z <= centreLimit) return normalDensity(z) / normalUpper(z);
+  return 1 / (Math.sqrt(2 * Math.PI) * scaledTail(z));
 }
 
 /** P(Z <= z). */

@@ -228,3 +228,6 @@ for (i in 1:260) {
     cells = cells, cellCount = cell_count, columns = columns), expected)
 }
 write_cases("cluster-regression", regression)
+
+# ---- the other estimators, each with a seed of its own ---------------------------------------------------
+for (part in c("reference-censored.R")) source(part)
