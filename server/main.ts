@@ -6,6 +6,7 @@ import { createRateLimits } from './middleware/rate-limit.ts';
 import { readConfig } from './platform/config.ts';
 import { startDemoMailbox } from './platform/demo-mailbox.ts';
 import { createEventHub } from './platform/event-hub.ts';
+import { createThreadPool } from './platform/heavy-work.ts';
 import { createLogger } from './platform/logger.ts';
 import { createMailer } from './platform/mailer.ts';
 import { createShutdown } from './platform/shutdown.ts';
@@ -36,6 +37,10 @@ const eventHub = createEventHub({ url: config.databaseUrl, logger });
 await eventHub.start();
 shutdown.onStop('events', () => eventHub.stop());
 
+// Beside this file once it is built.
+const heavyWork = createThreadPool({ file: new URL('./thread.js', import.meta.url) });
+shutdown.onStop('threads', () => heavyWork.close());
+
 const app = createApp({
   config,
   logger,
@@ -44,6 +49,7 @@ const app = createApp({
   demoMailbox,
   eventHub,
   rateLimits: createRateLimits(dataSource),
+  heavyWork,
   now: Date.now,
 });
 const server = createServer(app);

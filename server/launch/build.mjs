@@ -17,6 +17,7 @@ import { LaunchError, createTerminal, printFailure } from './terminal.mjs';
 /** What runs under Node: dist name -> source. @type {Record<string, string>} */
 export const entries = {
   server: 'server/main.ts',
+  thread: 'server/threads/thread.ts',
   worker: 'worker/main.ts',
   migrate: 'server/database/migrate.ts',
   'fake-feed': 'worker/fake-feed/main.ts',

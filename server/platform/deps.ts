@@ -2,6 +2,7 @@ import type { DataSource } from 'typeorm';
 import type { Config } from './config.ts';
 import type { DemoMailbox } from './demo-mailbox.ts';
 import type { EventHub } from './event-hub.ts';
+import type { HeavyWork } from './heavy-work.ts';
 import type { Logger } from './logger.ts';
 import type { Mailer } from './mailer.ts';
 import type { RateLimits } from '../middleware/rate-limit.ts';
@@ -16,6 +17,7 @@ export interface Deps {
   demoMailbox: DemoMailbox | null;
   eventHub: EventHub;
   rateLimits: RateLimits;
+  heavyWork: HeavyWork;
   /** The present, in milliseconds; tests set it. */
   now: () => number;
 }

@@ -17,6 +17,7 @@ import { openThrowAwayCluster } from '../../server/launch/cluster.mjs';
 import { createRateLimits } from '../../server/middleware/rate-limit.ts';
 import { readConfig } from '../../server/platform/config.ts';
 import { createEventHub } from '../../server/platform/event-hub.ts';
+import { createThreadPool } from '../../server/platform/heavy-work.ts';
 import { createLogger } from '../../server/platform/logger.ts';
 import { createMailer } from '../../server/platform/mailer.ts';
 import { STANDING_RULES } from '../../shared/pairing/index.ts';
@@ -103,6 +104,10 @@ try {
     mailer: createMailer({ url: '', from: '', logger }),
     eventHub: createEventHub({ url: databaseUrl, logger }),
     rateLimits: createRateLimits(dataSource),
+    heavyWork: createThreadPool({
+      file: new URL('../../server/threads/thread.ts', import.meta.url),
+      execArgv: ['--import', 'tsx'],
+    }),
   });
   const server = createServer(app).listen(0, '127.0.0.1');
   await once(server, 'listening');

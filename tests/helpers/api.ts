@@ -15,6 +15,7 @@ import type { Deps } from '../../server/platform/deps.ts';
 import { startDemoMailbox } from '../../server/platform/demo-mailbox.ts';
 import type { DemoMailbox } from '../../server/platform/demo-mailbox.ts';
 import { createEventHub } from '../../server/platform/event-hub.ts';
+import { createInlineWork } from '../../server/platform/heavy-work.ts';
 import { createLogger } from '../../server/platform/logger.ts';
 import { createMailer } from '../../server/platform/mailer.ts';
 import { hashPassword } from '../../server/platform/password.ts';
@@ -148,6 +149,7 @@ export async function startTestApi(config: Partial<Config> = {}): Promise<TestAp
     demoMailbox: mailbox,
     eventHub,
     rateLimits: createRateLimits(dataSource),
+    heavyWork: createInlineWork(),
     now: Date.now,
   };
   const { url, stop } = await startServer(deps);

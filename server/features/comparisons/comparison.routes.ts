@@ -14,8 +14,8 @@ export function comparisonRoutes(deps: Deps): Route[] {
     route(
       contract.compare,
       { access: inStation('comparison:read') },
-      async ({ params, body, actor, res }) => {
-        const answer = await service.answer(params.stationId, body, actor);
+      async ({ params, body, actor, signal, res }) => {
+        const answer = await service.answer(params.stationId, body, actor, signal);
         if ('pending' in answer) res.status(202);
         return answer;
       },

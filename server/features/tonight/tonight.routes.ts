@@ -3,7 +3,7 @@ import type { Deps } from '../../platform/deps.ts';
 import { NotFound } from '../../platform/errors.ts';
 import { inStation, route } from '../../platform/route.ts';
 import type { Route } from '../../platform/route.ts';
-import { findAntenna } from '../comparisons/comparison.read-model.ts';
+import { findAntenna } from '../units/units.read-model.ts';
 import { createTonightService } from './tonight.service.ts';
 
 export function tonightRoutes(deps: Deps): Route[] {

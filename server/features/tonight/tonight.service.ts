@@ -6,7 +6,7 @@ import type { Station } from '../../../shared/contracts/station.ts';
 import { readRecentPairs } from '../../database/recent-pairs.ts';
 import type { Deps } from '../../platform/deps.ts';
 import { listReceivers, readStation } from '../station/station.read-model.ts';
-import { readPairUnits } from '../comparisons/comparison.read-model.ts';
+import { readPairUnits } from '../units/units.read-model.ts';
 import { adviseBand, holdContests } from './band-advice.ts';
 import type { BandAdvice, Rival } from './band-advice.ts';
 import { advisedHour } from './hour-of-night.ts';

@@ -73,13 +73,16 @@ export async function readNightTallies(
   rulesKey: string,
   nights: NightRange,
 ): Promise<{ night: string; tally: NightTally }[]> {
-  return manager.query(
-    `SELECT night, tally FROM unit_night
+  const rows: { night: string; tally: Omit<NightTally, 'levels'> & Partial<NightTally> }[] =
+    await manager.query(
+      `SELECT night, tally FROM unit_night
      WHERE station_id = $1 AND rules_key = $2
        AND night >= coalesce($3::date, '-infinity') AND night <= coalesce($4::date, 'infinity')
      ORDER BY night`,
-    [stationId, rulesKey, nights.fromNight, nights.toNight],
-  );
+      [stationId, rulesKey, nights.fromNight, nights.toNight],
+    );
+  // A night that the worker has not made anew since levels are counted has none yet.
+  return rows.map(({ night, tally }) => ({ night, tally: { ...tally, levels: tally.levels ?? [] } }));
 }
 
 /** Nights in the range that were made under the standing rules and not yet under the others. */
