@@ -11,6 +11,7 @@ export * from './intervals.ts';
 export * from './ladder.ts';
 export * from './mcnemar.ts';
 export * from './paired-t.ts';
+export * from './pool.ts';
 export * from './random.ts';
 export * from './sign-test.ts';
 export * from './signed-rank.ts';
