@@ -4,6 +4,7 @@ export * from './censored-mean.ts';
 export { clusterIds, pairClusters, type ClusterIds } from './cluster-ids.ts';
 export * from './cluster-mean.ts';
 export * from './cluster-regression.ts';
+export * from './confidence-sequence.ts';
 export type { Design } from './design.ts';
 export * from './equivalence.ts';
 export * from './hodges-lehmann.ts';
