@@ -37,7 +37,8 @@ export function createAppRouter(history: RouterHistory = createWebHistory()): Ro
   const router = createRouter({
     history,
     routes,
-    scrollBehavior: (to, from, saved) => saved ?? (to.path === from.path ? false : { top: 0 }),
+    // A page with anchors goes to the one asked for by itself, once it stands.
+    scrollBehavior: (to, from, saved) => saved ?? (to.path === from.path || to.hash ? false : { top: 0 }),
   });
 
   router.beforeEach(admit);

@@ -17,7 +17,7 @@ declare module 'vue-router' {
 
 /** The pages of a station: route names, and the keys of the rail's icons. */
 export type StationPageName =
-  'tonight' | 'compare' | 'switching' | 'spots' | 'imports' | 'station' | 'members' | 'settings';
+  'tonight' | 'compare' | 'switching' | 'spots' | 'imports' | 'station' | 'members' | 'methods' | 'settings';
 
 export interface StationPage {
   /** Route name, and its path below /s/:stationId/. */
@@ -69,6 +69,12 @@ export const stationPages: readonly StationPage[] = [
     word: 'Members',
     permission: 'member:read',
     view: () => import('../views/MembersView.vue'),
+  },
+  {
+    name: 'methods',
+    word: 'Methods',
+    permission: 'station:read',
+    view: () => import('../views/MethodsView.vue'),
   },
   {
     name: 'settings',

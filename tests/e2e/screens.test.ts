@@ -13,6 +13,7 @@ const screens = [
   ['imports', 'operator'],
   ['station', 'manager'],
   ['members', 'manager'],
+  ['methods', 'contester'],
   ['settings', 'manager'],
 ] as const;
 const publicScreens = ['/sign-in', '/password-reset', '/demo-mail', '/no-such-page'];

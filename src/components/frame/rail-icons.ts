@@ -24,6 +24,8 @@ export const railIcons: Record<string, readonly string[]> = {
     'M3 20c.5-4 2.5-6 6-6s5.5 2 6 6',
     'M16 4.5a3.5 3.5 0 0 1 0 6.5M17.5 14.3c2 .8 3.2 2.7 3.5 5.7',
   ],
+  // The spread of many readings with its middle marked.
+  methods: ['M3 19c5 0 5-13 9-13s4 13 9 13', 'M12 19v-8', 'M3 21h18'],
   settings: ['M4 7h9M17 7h3', 'M15 5v4', 'M4 17h3M11 17h9', 'M9 15v4'],
   theme: ['M12 4a8 8 0 1 1-.01 0z', 'M12 4v16', 'M15 6.5v11M18 9v6'],
   leave: ['M14 4h5v16h-5', 'M4 12h10', 'M10.5 8.5L14 12l-3.5 3.5'],

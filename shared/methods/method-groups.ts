@@ -1,0 +1,22 @@
+import * as counted from './counted-entries.ts';
+import type { MethodGroup } from './method-entry.ts';
+
+/** The Methods page in reading order. */
+export const methodGroups: readonly MethodGroup[] = [
+  {
+    key: 'counted',
+    title: 'What is counted',
+    entries: [
+      counted.spot,
+      counted.dwell,
+      counted.guard,
+      counted.block,
+      counted.unit,
+      counted.heardOnly,
+      counted.night,
+      counted.stationNight,
+      counted.bearing,
+      counted.hours,
+    ],
+  },
+];
