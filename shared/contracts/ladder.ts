@@ -49,7 +49,10 @@ export const ladderAntenna = z.object({
   intervalDb: interval.nullable(),
   /** 1 is the highest value of the component; equal values share the better rank. null without a value. */
   rank: z.number().int().nullable(),
-  /** Share of seeded draws from the fitted normal in which this antenna has the component's highest value. */
+  /**
+   * Share of seeded draws from the fitted normal in which this antenna has the component's highest value.
+   * null where one station-night carries its link; it then does not count in the mean either.
+   */
   chanceBest: z.number().nullable(),
   /** Units, station-nights, nights and stations in which this antenna takes part. */
   units: z.number().int(),
@@ -83,7 +86,8 @@ export const ladderPair = z.object({
   stations: z.number().int(),
   /**
    * How much of the whole ladder hangs on this pair's direct units: their share of all leverage, 0 to 1;
-   * over all pairs the shares add up to 1. A lone bridge has a large share however many units it has.
+   * over all pairs the shares add up to 1 at most (the rest tells receivers apart). A lone bridge has a large
+   * share however few its units are.
    */
   weightShare: z.number(),
   /** Share of this difference that comes from its direct units; the rest comes round other antennas. null: no direct units. */
