@@ -14,6 +14,7 @@ export * from './mcnemar.ts';
 export * from './paired-t.ts';
 export * from './pool.ts';
 export * from './random.ts';
+export * from './sample-size.ts';
 export * from './sign-test.ts';
 export * from './signed-rank.ts';
 export * from './verdict.ts';

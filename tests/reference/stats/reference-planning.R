@@ -24,3 +24,33 @@ sequences <- lapply(1:220, function(i) {
        hi = I(line[, 3]))
 })
 write_cases("confidence-sequence", sequences)
+
+# ---- sample sizes: power.t.test(type = "paired") with its root tolerance tightened to 1e-12 ------------------
+plans <- lapply(1:240, function(i) {
+  sd <- round(runif(1, 0.3, 8), 3)
+  level <- c(0.95, 0.9, 0.99)[i %% 3 + 1]
+  power <- round(runif(1, 0.15, 0.99), 3)
+  difference <- round(sd * exp(runif(1, log(0.01), log(1.2))), 4)
+  n <- if (i %% 2) sample(2:40, 1) else round(exp(runif(1, log(2), log(20000))), 2)
+  strict <- i %% 5 == 0
+  ask <- function(...) power.t.test(..., sd = sd, sig.level = 1 - level, type = "paired", strict = strict, tol = 1e-12)
+  # R searches n from 2 up and fails where two values are enough.
+  needed <- tryCatch(ask(delta = difference, power = power)$n, error = function(e) NULL)
+  half <- round(sd * exp(runif(1, log(0.02), log(2))), 4)
+  width <- function(n) qt(1 - (1 - level) / 2, n - 1) * sd / sqrt(n)
+  # Beyond a noncentrality of 37.62 pt() itself is a rough approximation.
+  detectable <- ask(n = n, power = power)$delta
+  if (sqrt(n) * detectable / sd > 37) detectable <- NULL
+  list(sd = sd, level = level, power = power, difference = difference, n = n, strict = strict, needed = needed,
+       reached = ask(delta = difference, n = n)$power, detectable = detectable, half = half,
+       forHalf = if (width(2) > half) uniroot(function(n) width(n) - half, c(2, 1e7), tol = 1e-12)$root, width = width(n))
+})
+write_cases("sample-size", plans)
+
+# ---- noncentral t; R's own series stops at 1e-12 -------------------------------------------------------------
+noncentral <- list()
+for (df in c(1, 2, 3.5, 7, 29, 127.3, 1000)) for (ncp in c(-4, -0.7, 0.5, 2.8, 9, 30))
+  for (t in c(-6, -1.5, 0, 0.4, 1.98, 4, 12, 35))
+    noncentral[[length(noncentral) + 1]] <- list(t = t, df = df, ncp = ncp, lower = suppressWarnings(pt(t, df, ncp)),
+      upper = suppressWarnings(pt(t, df, ncp, lower.tail = FALSE)))
+write_cases("noncentral-t", noncentral)
