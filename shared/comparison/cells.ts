@@ -1,7 +1,8 @@
-import type { ComparisonCell } from '../contracts/comparison.ts';
+import type { ComparisonCell, ComparisonQuestion } from '../contracts/comparison.ts';
 import { nightDate } from '../radio/night.ts';
-import { benjaminiHochberg, clusterRegression } from '../stats/index.ts';
+import { benjaminiHochberg, clusterIds, clusterRegression } from '../stats/index.ts';
 import type { OffsetColumn } from './offsets.ts';
+import type { CellWithError } from './pooling.ts';
 import { NO_HOUR, NO_SECTOR } from './selection.ts';
 import type { SelectedUnits } from './selection.ts';
 
@@ -13,7 +14,7 @@ type Place = Pick<ComparisonCell, 'bandMetres' | 'sector' | 'hour' | 'night'>;
 const nowhere: Place = { bandMetres: null, sector: null, hour: null, night: null };
 
 /** Which cell a unit falls into (null: none), under a key that sorts. */
-interface Layout {
+export interface Layout {
   keyOf: (units: SelectedUnits, i: number) => number | null;
   placeOf: (key: number) => Place;
   minNights: number;
@@ -49,7 +50,8 @@ export function comparisonCells(
   offsets: OffsetColumn[],
   clusters: Int32Array,
   layout: Layout,
-): ComparisonCell[] {
+  clustering: ComparisonQuestion['clustering'],
+): CellWithError[] {
   const { rows, cell, keys } = layOut(units, layout);
   if (rows.length === 0) return [];
   const whole = rows.length === units.n;
@@ -61,12 +63,16 @@ export function comparisonCells(
     },
     whole ? units.differenceDb : pick(units.differenceDb, rows),
     whole ? clusters : rows.map((i) => clusters[i]!),
+    // The cells of one night have but one night: their own picture stays one-way.
+    clustering === 'two-way' && layout.minNights > 1
+      ? { secondClusters: clusterIds(Array.from(rows, (i) => units.night[i]!)).ids }
+      : {},
   );
   const nights = nightsPerCell(units, rows, cell, keys.length);
-  const cells = keys.map((key, index): ComparisonCell => {
+  const cells = keys.map((key, index): CellWithError => {
     const c = fit.coefficients[index]!;
     const enough = c.clusters >= CELL_MIN_CLUSTERS && nights[index]! >= layout.minNights;
-    return {
+    const cell: ComparisonCell = {
       ...layout.placeOf(key),
       units: c.rows,
       clusters: c.clusters,
@@ -76,9 +82,12 @@ export function comparisonCells(
       p: c.p,
       pAdjusted: null,
       speaks: enough && c.estimate !== null && c.interval !== null,
+      pooledDb: null,
+      pooledIntervalDb: null,
     };
+    return { cell, seDb: c.se };
   });
-  const speaking = cells.filter((c) => c.speaks && c.p !== null);
+  const speaking = cells.map(({ cell }) => cell).filter((c) => c.speaks && c.p !== null);
   const { adjusted } = benjaminiHochberg(speaking.map((c) => c.p!));
   speaking.forEach((c, k) => (c.pAdjusted = adjusted[k]!));
   return cells;

@@ -1,6 +1,7 @@
 import type { ComparisonAnswer } from '../contracts/comparison.ts';
-import { clusterIds, majorityByCluster, mcnemar } from '../stats/index.ts';
+import { benjaminiHochberg, clusterIds, majorityByCluster, mcnemar } from '../stats/index.ts';
 import type { ComparisonInput } from './input.ts';
+import { NO_SECTOR } from './selection.ts';
 import type { LeftOut, SelectedHeardOnly, SelectedUnits } from './selection.ts';
 
 type Fairness = ComparisonAnswer['fairness'];
@@ -70,6 +71,39 @@ export function heardOnlyTest(heardOnly: SelectedHeardOnly): Fairness['heardOnly
     exactP: test.n === 0 ? null : test.p,
     midP: test.n === 0 ? null : test.midP,
   };
+}
+
+/** The same by sector, adjusted across the sectors (Benjamini and Hochberg). Sectors without any are left out. */
+export function heardOnlyBySector(heardOnly: SelectedHeardOnly): ComparisonAnswer['heardOnlySectors'] {
+  const rowsOf = new Map<number, number[]>();
+  for (let i = 0; i < heardOnly.n; i++) {
+    const sector = heardOnly.sector[i]!;
+    if (sector === NO_SECTOR) continue;
+    const rows = rowsOf.get(sector);
+    if (rows) rows.push(i);
+    else rowsOf.set(sector, [i]);
+  }
+  const keys = clusterKeys(heardOnly);
+  const sectors = [...rowsOf]
+    .sort(([p], [q]) => p - q)
+    .map(([sector, rows]) => {
+      const { onlyA, onlyB } = majorityByCluster(
+        rows.map((i) => heardOnly.side[i]!),
+        clusterIds(rows.map((i) => keys[i]!)).ids,
+      );
+      return { sector, test: mcnemar(onlyA, onlyB) };
+    });
+  const decided = sectors.filter(({ test }) => test.n > 0);
+  const { adjusted } = benjaminiHochberg(decided.map(({ test }) => test.midP));
+  return sectors.map(({ sector, test }) => ({
+    sector,
+    onlyA: test.onlyA,
+    onlyB: test.onlyB,
+    oddsRatio: test.oddsRatio,
+    intervalRatio: test.interval,
+    midP: test.n === 0 ? null : test.midP,
+    pAdjusted: test.n === 0 ? null : adjusted[decided.findIndex((d) => d.sector === sector)]!,
+  }));
 }
 
 /** The fewest stations that together hold half of the units: a small number means that few decide. */

@@ -122,6 +122,7 @@ describe('the second line of the question', () => {
       'Rules: blocks of 15\u2009min, window 30\u2009s, tolerance 0.3\u2009kHz, guard 20\u2009s, the rules of the station',
       'Margin: 1\u2009dB',
       'Zeros: dropped before ranking',
+      'Independent: station-nights',
     ]);
   });
 
@@ -144,6 +145,7 @@ describe('the second line of the question', () => {
       'blocks of 30\u2009min, window 30\u2009s, tolerance 0.3\u2009kHz, guard 20\u2009s',
       '2.5\u2009dB',
       'dropped before ranking',
+      'station-nights',
     ]);
   });
 });

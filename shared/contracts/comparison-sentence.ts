@@ -75,6 +75,10 @@ export function questionTerms(
       term: 'Zeros',
       text: question.zeros === 'pratt' ? "kept while ranking (Pratt's rule)" : 'dropped before ranking',
     },
+    {
+      term: 'Independent',
+      text: question.clustering === 'two-way' ? 'stations and nights (two-way)' : 'station-nights',
+    },
   ];
 }
 

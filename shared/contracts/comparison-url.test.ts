@@ -47,6 +47,7 @@ const question: fc.Arbitrary<QuestionDraft> = fc
     ),
     marginDb: fc.option(fc.double({ min: 0.1, max: 20, noNaN: true })),
     zeros: fc.constantFrom('pratt' as const, 'drop' as const),
+    clustering: fc.constantFrom('one-way' as const, 'two-way' as const),
     hourBasis: fc.constantFrom('utc' as const, 'sunset' as const, 'sunrise' as const),
   })
   .filter((q) => q.antennaA !== q.antennaB)

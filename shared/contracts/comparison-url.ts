@@ -31,6 +31,7 @@ export const openQuestion: Readonly<QuestionDraft> = Object.freeze({
   rules: null,
   marginDb: null,
   zeros: 'drop',
+  clustering: 'one-way',
   hourBasis: 'utc',
 });
 
@@ -47,6 +48,7 @@ export const questionKeys = [
   'rules',
   'margin',
   'zeros',
+  'clusters',
   'basis',
 ] as const;
 type QuestionKey = (typeof questionKeys)[number];
@@ -79,6 +81,7 @@ export function encodeQuestion(question: QuestionDraft): Partial<Record<Question
         : [rules.blockMinutes, rules.windowSeconds, rules.freqToleranceKhz, rules.guardSeconds].join(','),
     margin: question.marginDb === null ? '' : String(question.marginDb),
     zeros: question.zeros === 'drop' ? '' : question.zeros,
+    clusters: question.clustering === 'one-way' ? '' : question.clustering,
     basis: question.hourBasis === 'utc' ? '' : question.hourBasis,
   };
   return Object.fromEntries(questionKeys.filter((key) => parts[key] !== '').map((key) => [key, parts[key]]));
@@ -198,6 +201,13 @@ export function decodeQuestion(query: AddressQuery, otherKeys: readonly string[]
       'drop',
       'give pratt or drop',
       'Zeros are dropped before ranking.',
+    ),
+    clustering: read<ComparisonQuestion['clustering']>(
+      'clusters',
+      (text) => within(shape.clustering.unwrap(), text),
+      'one-way',
+      'give one-way or two-way',
+      'Station-nights are taken as independent.',
     ),
     hourBasis: read<ComparisonQuestion['hourBasis']>(
       'basis',

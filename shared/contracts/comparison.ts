@@ -41,6 +41,8 @@ export const comparisonQuestion = z
     marginDb: z.number().min(0.1).max(20).nullable().default(null),
     /** Differences of exactly zero in the rank view: dropped before ranking (Wilcoxon), or kept (Pratt). */
     zeros: z.enum(['drop', 'pratt']).default('drop'),
+    /** What is taken as independent: (call sign, night), or both call signs and nights (two-way). */
+    clustering: z.enum(['one-way', 'two-way']).default('one-way'),
     /** How the band-by-hour map counts its hours. */
     hourBasis: z.enum(['utc', 'sunset', 'sunrise']).default('utc'),
   })
@@ -83,8 +85,97 @@ export const comparisonCell = z.object({
   pAdjusted: z.number().nullable(),
   /** At least 8 clusters from at least 3 nights; a single night speaks with 8 clusters. */
   speaks: z.boolean(),
+  /** Drawn toward the mean of the picture's cells, the more the less the cell knows. null: no pooling here. */
+  pooledDb: z.number().nullable(),
+  pooledIntervalDb: interval.nullable(),
 });
 export type ComparisonCell = z.infer<typeof comparisonCell>;
+
+/** How much the cells of one picture differ beyond chance (random effects over the cells that speak). */
+export const comparisonPooling = z.object({
+  cells: z.number().int(),
+  /** Mean over cells and its interval. */
+  meanDb: z.number(),
+  intervalDb: interval,
+  /** Spread of the true cell values, dB (Paule-Mandel). */
+  tauDb: z.number(),
+  /** Cochran's Q, its degrees of freedom and p. */
+  q: z.number(),
+  df: z.number().int(),
+  p: z.number(),
+  /** Share of the spread that is not chance, 0 to 1. */
+  iSquared: z.number(),
+  /** All of it in words. */
+  sentence: z.string(),
+});
+export type ComparisonPooling = z.infer<typeof comparisonPooling>;
+
+/** The differences with the stations that only one antenna heard, as censored values. */
+export const censoredView = z.object({
+  estimateDb: z.number(),
+  seDb: z.number(),
+  intervalDb: interval,
+  /** Standard deviation of a single difference, dB. */
+  spreadDb: z.number(),
+  /** Differences heard on both, A only and B only. */
+  both: z.number().int(),
+  onlyA: z.number().int(),
+  onlyB: z.number().int(),
+  /** 2nd percentile of the SNR of each receiver on each band: what a station must exceed to be heard. */
+  limits: z.array(z.object({ receiverId: id, bandMetres: z.number().int(), limitDb: z.number() })),
+  /** Whether it differs from the plain estimate by more than the margin. */
+  disagrees: z.boolean(),
+  sentence: z.string(),
+});
+
+/** Stations heard on one antenna only, in one sector; each (call sign, night) counted once. */
+export const heardOnlySector = z.object({
+  sector: z.number().int(),
+  onlyA: z.number().int(),
+  onlyB: z.number().int(),
+  oddsRatio: z.number().nullable(),
+  /** Upper end null: without limit. */
+  intervalRatio: z.tuple([z.number(), z.number().nullable()]).nullable(),
+  midP: z.number().nullable(),
+  /** Benjamini-Hochberg adjusted across the sectors. */
+  pAdjusted: z.number().nullable(),
+});
+
+/** The interval that may be watched while data come in, after each night. */
+export const peekProofLine = z.object({
+  /** The number of station-nights at which the interval is tightest for its kind; fixed beforehand. */
+  tunedForClusters: z.number().int(),
+  points: z.array(
+    z.object({
+      night: day,
+      clusters: z.number().int(),
+      estimateDb: z.number(),
+      intervalDb: interval.nullable(),
+    }),
+  ),
+  sentence: z.string(),
+});
+
+/** What further nights like those so far would bring. */
+export const comparisonPlanning = z.object({
+  /** Spread of one station-night as it acts on the estimate, dB. */
+  spreadDb: z.number(),
+  clustersPerNight: z.number(),
+  halfWidthNowDb: z.number(),
+  /** Smallest true difference that data as many as these find in 80 of 100 cases. */
+  detectableDb: z.number(),
+  precision: z.array(
+    z.object({
+      halfWidthDb: z.number(),
+      clusters: z.number().int(),
+      /** Nights still needed; 0 where it is reached. */
+      moreNights: z.number().int(),
+    }),
+  ),
+  /** For finding a true difference of the margin in 80 of 100 cases. */
+  power: z.object({ clusters: z.number().int(), moreNights: z.number().int() }),
+  sentence: z.string(),
+});
 
 export const comparisonAnswer = z.object({
   question: comparisonQuestion,
@@ -139,6 +230,16 @@ export const comparisonAnswer = z.object({
     })
     .nullable(),
   equivalence: z.object({ p: z.number(), equivalent: z.boolean() }).nullable(),
+  /** null where it cannot be fitted; `views` says why. */
+  censored: censoredView.nullable(),
+  peekProof: peekProofLine.nullable(),
+  planning: comparisonPlanning.nullable(),
+  /** Why a view above is missing, one sentence each. */
+  views: z.object({
+    censored: z.string().nullable(),
+    peekProof: z.string().nullable(),
+    planning: z.string().nullable(),
+  }),
   histogram: z.object({
     binWidthDb: z.number(),
     bins: z.array(z.object({ fromDb: z.number(), units: z.number().int() })),
@@ -146,6 +247,13 @@ export const comparisonAnswer = z.object({
   sectors: z.array(comparisonCell),
   bandHours: z.object({ basis: z.enum(['utc', 'sunset', 'sunrise']), cells: z.array(comparisonCell) }),
   nights: z.array(comparisonCell),
+  /** null where fewer than two cells speak. */
+  pooling: z.object({
+    sectors: comparisonPooling.nullable(),
+    bandHours: comparisonPooling.nullable(),
+    nights: comparisonPooling.nullable(),
+  }),
+  heardOnlySectors: z.array(heardOnlySector),
   fairness: z.object({
     exclusions: z.object({
       guardedSpots: z.number().int(),
@@ -215,6 +323,51 @@ export const compare = endpoint({
   body: comparisonQuestion,
   reply: z.union([comparisonAnswer, comparisonPending]),
 });
+export const sensitivityGroup = z.enum([
+  'as asked',
+  'block length',
+  'matching window',
+  'guard',
+  'zeros',
+  'clustering',
+  'stations',
+  'weights',
+]);
+
+/** The same question under one changed choice. */
+export const sensitivityVariant = z.object({
+  /** Unique within the reply, the same from one call to the next. */
+  key: z.string(),
+  group: sensitivityGroup,
+  /** "Block of 5 min", "Without the five heaviest stations". */
+  label: z.string(),
+  /** 'not made': units under these rules do not exist and this person may not have them made. */
+  state: z.enum(['ready', 'waiting', 'not made']),
+  /** The job that makes the units, while it waits or runs. */
+  jobId: longId.nullable(),
+  /** null unless ready and computable. */
+  estimateDb: z.number().nullable(),
+  intervalDb: interval.nullable(),
+  units: z.number().int(),
+  clusters: z.number().int(),
+  verdict: verdictCode.nullable(),
+});
+export type SensitivityVariant = z.infer<typeof sensitivityVariant>;
+
+export const sensitivity = endpoint({
+  method: 'POST',
+  path: '/stations/:stationId/comparisons/sensitivity',
+  summary: 'The answer under other choices; units under other rules are made first where `prepare` says so',
+  params: stationParams,
+  body: z.object({ question: comparisonQuestion, prepare: z.boolean().default(false) }),
+  reply: z.object({
+    marginDb: z.number(),
+    variants: z.array(sensitivityVariant),
+    /** What the variants say together; null while some wait. */
+    sentence: z.string().nullable(),
+  }),
+});
+
 export const exportUnits = endpoint({
   method: 'POST',
   path: '/stations/:stationId/comparisons/units.csv',

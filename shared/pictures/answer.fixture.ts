@@ -18,6 +18,7 @@ export function fixtureAnswer(overrides: Partial<ComparisonAnswer> = {}): Compar
       rules: null,
       marginDb: null,
       zeros: 'drop',
+      clustering: 'one-way',
       hourBasis: 'utc',
     },
     antennas: {
@@ -66,6 +67,49 @@ export function fixtureAnswer(overrides: Partial<ComparisonAnswer> = {}): Compar
       chanceAHearsBetter: 0.66,
     },
     equivalence: { p: 0.98, equivalent: false },
+    censored: {
+      estimateDb: 2.9,
+      seDb: 0.4,
+      intervalDb: [2.1, 3.7],
+      spreadDb: 5.2,
+      both: 412,
+      onlyA: 160,
+      onlyB: 92,
+      limits: [
+        { receiverId: 1, bandMetres: 160, limitDb: 3 },
+        { receiverId: 2, bandMetres: 160, limitDb: 4 },
+      ],
+      disagrees: true,
+      sentence:
+        'Counting those 160 heard on North-east wire only and 92 on Vertical only moves the difference from 1.8 to 2.9\u2009dB, more than the margin of 1.0\u2009dB: the plain estimate takes only stations that both heard, which pulls it toward zero.',
+    },
+    peekProof: {
+      tunedForClusters: 200,
+      points: nights.map((night, index) => ({
+        night,
+        clusters: 15 * (index + 1),
+        estimateDb: 1.8 + Math.sin(index) / (index + 1),
+        intervalDb: index < 2 ? null : [1.8 - 9 / (index + 1), 1.8 + 9 / (index + 1)],
+      })),
+      sentence:
+        'North-east wire hears better, and that may be said however often you look: since the night of 2026-11-05 the peek-proof interval has left zero out (now 1.2 to 2.4\u2009dB).',
+    },
+    planning: {
+      spreadDb: 5.1,
+      clustersPerNight: 15.1,
+      halfWidthNowDb: 0.7,
+      detectableDb: 1,
+      precision: [
+        { halfWidthDb: 2, clusters: 28, moreNights: 0 },
+        { halfWidthDb: 1, clusters: 103, moreNights: 0 },
+        { halfWidthDb: 0.5, clusters: 402, moreNights: 13 },
+        { halfWidthDb: 0.25, clusters: 1601, moreNights: 92 },
+      ],
+      power: { clusters: 207, moreNights: 0 },
+      sentence:
+        'With the data so far a true difference of 1.0\u2009dB would have been found in 80 of 100 cases. That is enough for the margin of 1.0\u2009dB.',
+    },
+    views: { censored: null, peekProof: null, planning: null },
     histogram: {
       binWidthDb: 1,
       // Two far tails, which the pictures gather at the edges of the axis.
@@ -106,6 +150,42 @@ export function fixtureAnswer(overrides: Partial<ComparisonAnswer> = {}): Compar
         halfWidthDb: index === 9 ? 16 : 1.8 + (index % 4) * 0.5,
       }),
     ),
+    pooling: {
+      sectors: {
+        cells: 9,
+        meanDb: 0.9,
+        intervalDb: [-0.8, 2.6],
+        tauDb: 2.6,
+        q: 31.2,
+        df: 8,
+        p: 0.0001,
+        iSquared: 0.74,
+        sentence:
+          'The directions truly differ, by about 2.6\u2009dB around their mean: 74\u2009% of the spread between them is more than chance.',
+      },
+      bandHours: null,
+      nights: null,
+    },
+    heardOnlySectors: [
+      {
+        sector: 1,
+        onlyA: 14,
+        onlyB: 3,
+        oddsRatio: 4.67,
+        intervalRatio: [1.3, 25.3],
+        midP: 0.008,
+        pAdjusted: 0.02,
+      },
+      {
+        sector: 9,
+        onlyA: 5,
+        onlyB: 0,
+        oddsRatio: null,
+        intervalRatio: [0.92, null],
+        midP: 0.03,
+        pAdjusted: 0.03,
+      },
+    ],
     fairness: {
       exclusions: {
         guardedSpots: 812,
@@ -168,6 +248,8 @@ export function cell(
     intervalDb: [given.estimateDb - halfWidthDb, given.estimateDb + halfWidthDb],
     p: 0.04,
     pAdjusted: 0.09,
+    pooledDb: null,
+    pooledIntervalDb: null,
     speaks: given.clusters >= 8 && (given.night != null || (given.nights ?? 1) >= 3),
     ...rest,
   };

@@ -33,6 +33,8 @@ export function emptyCell(place: Partial<ComparisonCell>): ComparisonCell {
     intervalDb: null,
     p: null,
     pAdjusted: null,
+    pooledDb: null,
+    pooledIntervalDb: null,
     speaks: false,
     ...place,
   };

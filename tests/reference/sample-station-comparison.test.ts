@@ -1,56 +1,13 @@
 import { readFileSync } from 'node:fs';
 import { describe, expect, it } from 'vitest';
 import { answerComparison } from '../../shared/comparison/index.ts';
-import type { ComparisonInput } from '../../shared/comparison/index.ts';
-import { comparisonQuestion } from '../../shared/contracts/comparison.ts';
-import { STANDING_RULES, pairSpots } from '../../shared/pairing/index.ts';
-import type { HeardOnlyColumns, UnitColumns } from '../../shared/pairing/index.ts';
-import { loadSampleStation } from './sample-station/load.ts';
+import { askSample as ask } from './sample-station/ask.ts';
 
 /**
  * The sample station's comparisons were worked independently in R 4.2.2 (data.table, sandwich) from the
  * rules of the method: counts exact, estimates to 1e-6, rank values to 0.01. The data are invented.
  */
 const expected = JSON.parse(readFileSync(new URL('sample-station/expected.json', import.meta.url), 'utf8'));
-
-/** Copies the rows of one antenna pair out of all units, as the server reads them. */
-function ofPair<T extends UnitColumns | HeardOnlyColumns>(columns: T, a: number, b: number): T {
-  const keep = [...columns.antennaA.keys()].filter(
-    (i) => columns.antennaA[i] === a && columns.antennaB[i] === b,
-  );
-  return Object.fromEntries(
-    Object.entries(columns).map(([name, values]) => [
-      name,
-      (values as Int32Array).filter((_v, i) => keep.includes(i)),
-    ]),
-  ) as unknown as T;
-}
-
-function ask(set: 'swap' | 'alternate', nameA: string, nameB: string, change: object = {}): ComparisonInput {
-  const sample = loadSampleStation(set);
-  const startMs = sample.dwells.startMs.reduce((x, y) => Math.min(x, y)) - 86_400_000;
-  const endMs = sample.dwells.endMs.reduce((x, y) => Math.max(x, y)) + 86_400_000;
-  const paired = pairSpots(sample.spots, sample.dwells, STANDING_RULES, { startMs, endMs });
-  const a = sample.antennaIds.get(nameA)!;
-  const b = sample.antennaIds.get(nameB)!;
-  const [low, high] = a < b ? [a, b] : [b, a];
-  return {
-    question: comparisonQuestion.parse({ antennaA: a, antennaB: b, ...change }),
-    antennas: {
-      a: { id: a, name: nameA, marker: 'A', headingDeg: null },
-      b: { id: b, name: nameB, marker: 'B', headingDeg: null },
-    },
-    receivers: [...sample.receiverIds].map(([callSign, id]) => ({ id, callSign })),
-    rules: { ...STANDING_RULES, blockMinutes: 15 },
-    marginDb: 1,
-    sectorCount: 12,
-    station: { latitude: 53.5, longitude: expected.rules.station.longitude },
-    units: ofPair(paired.units, low, high),
-    heardOnly: ofPair(paired.heardOnly, low, high),
-    calls: new Map(),
-    nights: [],
-  };
-}
 
 interface Worked {
   units: number;

@@ -5,10 +5,12 @@ import { answered, inStation, route } from '../../platform/route.ts';
 import type { Route } from '../../platform/route.ts';
 import { sendCsv } from '../../platform/send-csv.ts';
 import { createComparisonService } from './comparison.service.ts';
+import { createSensitivityService } from './sensitivity.service.ts';
 import { unitRows, unitRowsHeader } from './unit-rows.ts';
 
 export function comparisonRoutes(deps: Deps): Route[] {
   const service = createComparisonService(deps);
+  const askSensitivity = createSensitivityService(deps);
 
   return [
     route(
@@ -19,6 +21,9 @@ export function comparisonRoutes(deps: Deps): Route[] {
         if ('pending' in answer) res.status(202);
         return answer;
       },
+    ),
+    route(contract.sensitivity, { access: inStation('comparison:read') }, ({ params, body, actor, signal }) =>
+      askSensitivity(params.stationId, body.question, body.prepare, actor, signal),
     ),
     route(
       contract.exportUnits,

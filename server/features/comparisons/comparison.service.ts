@@ -13,7 +13,7 @@ import { nightsWaiting, prepareUnits, rulesInForce } from '../units/prepare-unit
 import * as read from '../units/units.read-model.ts';
 import { unknownIds } from './question-ids.read-model.ts';
 
-type Pending = z.input<typeof comparisonPending>;
+type Pending = z.output<typeof comparisonPending>;
 export interface Prepared {
   input: ComparisonInput;
   preparation: ComparisonAnswer['preparation'];

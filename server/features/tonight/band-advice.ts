@@ -42,6 +42,7 @@ export function holdContests(
           rules: null,
           marginDb: null,
           zeros: 'drop',
+          clustering: 'one-way',
           hourBasis: 'utc',
         },
         ...question,
