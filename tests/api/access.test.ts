@@ -82,6 +82,7 @@ describe('access to the API', () => {
       'POST /auth/invitation/read',
       'POST /stations/:stationId/comparisons',
       'POST /stations/:stationId/comparisons/units.csv',
+      'POST /stations/:stationId/comparisons/sensitivity',
       'POST /stations/:stationId/dwells/preview',
       'POST /stations/:stationId/imports/:importId/preview',
     ];

@@ -113,6 +113,7 @@ export function walks(mine: StationRows, f: Ids): Map<string, Walk[]> {
     ['POST /stations/:stationId/dwells/history/:batchId/undo', path],
     ['POST /stations/:stationId/comparisons', questions((q) => q)],
     ['POST /stations/:stationId/comparisons/units.csv', questions((q) => q)],
+    ['POST /stations/:stationId/comparisons/sensitivity', questions((question) => ({ question }))],
     ['POST /stations/:stationId/trials', questions((q) => ({ name: 'Taken', question: q }))],
     ['GET /stations/:stationId/trials/:trialId', path],
     [
