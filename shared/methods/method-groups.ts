@@ -1,3 +1,4 @@
+import * as answer from './answer-entries.ts';
 import * as counted from './counted-entries.ts';
 import type { MethodGroup } from './method-entry.ts';
 
@@ -17,6 +18,21 @@ export const methodGroups: readonly MethodGroup[] = [
       counted.stationNight,
       counted.bearing,
       counted.hours,
+    ],
+  },
+  {
+    key: 'answer',
+    title: 'The answer',
+    entries: [
+      answer.estimate,
+      answer.interval,
+      answer.receiverOffsets,
+      answer.separability,
+      answer.designEffect,
+      answer.twoWay,
+      answer.p,
+      answer.verdictEntry,
+      answer.equivalenceEntry,
     ],
   },
 ];
