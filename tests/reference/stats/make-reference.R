@@ -230,4 +230,4 @@ for (i in 1:260) {
 write_cases("cluster-regression", regression)
 
 # ---- the other estimators, each with a seed of its own ---------------------------------------------------
-for (part in c("reference-censored.R", "reference-pool.R", "reference-planning.R")) source(part)
+for (part in c("reference-censored.R", "reference-pool.R", "reference-planning.R", "reference-monitoring.R")) source(part)
