@@ -1,5 +1,6 @@
 import * as answer from './answer-entries.ts';
 import * as counted from './counted-entries.ts';
+import * as other from './other-view-entries.ts';
 import type { MethodGroup } from './method-entry.ts';
 
 /** The Methods page in reading order. */
@@ -33,6 +34,22 @@ export const methodGroups: readonly MethodGroup[] = [
       answer.p,
       answer.verdictEntry,
       answer.equivalenceEntry,
+    ],
+  },
+  {
+    key: 'otherwise',
+    title: 'The same, seen otherwise',
+    entries: [
+      other.signedRankEntry,
+      other.hodgesLehmannEntry,
+      other.pairedTEntry,
+      other.effectSize,
+      other.chanceBetter,
+      other.signTestEntry,
+      other.oddsRatio,
+      other.censored,
+      other.halfWeight,
+      other.histogramEntry,
     ],
   },
 ];
