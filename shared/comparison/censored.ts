@@ -3,6 +3,7 @@ import { censoredMean, clusterIds } from '../stats/index.ts';
 import type { CensoredReason } from '../stats/index.ts';
 import { clusterKeys } from './fairness.ts';
 import type { ComparisonInput } from './input.ts';
+import { receiverOnBand } from './offsets.ts';
 import type { OffsetColumn } from './offsets.ts';
 import type { SelectedHeardOnly, SelectedUnits } from './selection.ts';
 import { decibels } from './wording.ts';
@@ -137,8 +138,8 @@ function censoredRows(
     // A receiver that no unit of the band knows has no offset here.
     const linked =
       alternating ||
-      (known.has(limitKey(heardOnly.receiverA[i]!, band)) &&
-        known.has(limitKey(heardOnly.receiverB[i]!, band)));
+      (known.has(receiverOnBand(heardOnly.receiverA[i]!, band)) &&
+        known.has(receiverOnBand(heardOnly.receiverB[i]!, band)));
     if (linked && limits.has(limitKey(silent, band))) usable.push(i);
   }
   const n = units.n + usable.length;
@@ -180,13 +181,12 @@ function censoredRows(
 }
 
 /** Receivers of simultaneous units by band: those whose offsets the regression knows. */
-function knownReceivers(units: SelectedUnits): Set<string> {
-  const known = new Set<string>();
+function knownReceivers(units: SelectedUnits): Set<number> {
+  const known = new Set<number>();
   for (let i = 0; i < units.n; i++) {
     if (units.alternating[i] === 1) continue;
-    known
-      .add(limitKey(units.receiverA[i]!, units.band[i]!))
-      .add(limitKey(units.receiverB[i]!, units.band[i]!));
+    known.add(receiverOnBand(units.receiverA[i]!, units.band[i]!));
+    known.add(receiverOnBand(units.receiverB[i]!, units.band[i]!));
   }
   return known;
 }

@@ -9,6 +9,9 @@ export interface OffsetColumn {
   values: Float64Array;
 }
 
+/** One exact number for a receiver on a band: text keys would cost more than the rest of the work. */
+export const receiverOnBand = (receiverId: number, bandMetres: number) => bandMetres * 2 ** 31 + receiverId;
+
 /**
  * The columns z of d = theta + sum of rho z, one per receiver and band but one: +1 where the receiver was
  * on A's side, -1 where it was on B's. Alternating units have one receiver
@@ -23,19 +26,19 @@ export function offsetColumns(units: SelectedUnits): OffsetColumn[] {
     receiversOfBand.set(units.band[i]!, set);
   }
   const columns: OffsetColumn[] = [];
-  const columnOf = new Map<string, Float64Array>();
+  const columnOf = new Map<number, Float64Array>();
   for (const [bandMetres, receivers] of [...receiversOfBand].sort(([a], [b]) => a - b)) {
     const [first, ...others] = [...receivers].sort((a, b) => a - b);
     for (const receiverId of others) {
       const values = new Float64Array(units.n);
       columns.push({ receiverId, againstReceiverId: first!, bandMetres, values });
-      columnOf.set(`${bandMetres} ${receiverId}`, values);
+      columnOf.set(receiverOnBand(receiverId, bandMetres), values);
     }
   }
   for (let i = 0; i < units.n; i++) {
     if (units.alternating[i] === 1) continue;
-    const onA = columnOf.get(`${units.band[i]} ${units.receiverA[i]}`);
-    const onB = columnOf.get(`${units.band[i]} ${units.receiverB[i]}`);
+    const onA = columnOf.get(receiverOnBand(units.receiverA[i]!, units.band[i]!));
+    const onB = columnOf.get(receiverOnBand(units.receiverB[i]!, units.band[i]!));
     if (onA) onA[i]! += 1;
     if (onB) onB[i]! -= 1;
   }
