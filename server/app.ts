@@ -2,7 +2,7 @@ import { randomUUID } from 'node:crypto';
 import { existsSync } from 'node:fs';
 import path from 'node:path';
 import express from 'express';
-import type { Express } from 'express';
+import type { Express, RequestHandler } from 'express';
 import helmet from 'helmet';
 import { pinoHttp } from 'pino-http';
 import { apiRoutes } from './features/index.ts';
@@ -60,6 +60,7 @@ export function createApp(deps: Deps): Express {
     }),
   );
   app.get('/metrics', metrics.expose);
+  app.use(['/f', '/api/shared-findings'], forGuestsOnly);
 
   const api = express.Router();
   api.use(express.json({ limit: '1mb' }));
@@ -81,6 +82,13 @@ export function createApp(deps: Deps): Express {
   app.use(errorHandler(deps.logger));
   return app;
 }
+
+/** A link that was handed to a guest must not end up in a search engine or a shared cache. */
+const forGuestsOnly: RequestHandler = (_req, res, next) => {
+  res.setHeader('X-Robots-Tag', 'noindex, nofollow, noarchive');
+  res.setHeader('Cache-Control', 'no-store');
+  next();
+};
 
 /** Hashed assets may be kept for a year; the page itself is asked for every time, so that a deploy shows. */
 function serveClient(app: Express, folder: string): void {

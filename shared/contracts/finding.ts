@@ -141,9 +141,9 @@ const numbers = z.object({
 export const dwellFacts = z.object({
   receiver: z.string(),
   antenna: z.string(),
+  /** Cut to the nights of the finding. */
   startsAt: instant,
-  /** null: still on. */
-  endsAt: instant.nullable(),
+  endsAt: instant,
 });
 export type DwellFacts = z.infer<typeof dwellFacts>;
 
@@ -316,8 +316,8 @@ export const findingPicture = endpoint({
 
 const token = z.string().min(20, 'The link is not complete.').max(200, 'The link is not complete.');
 
-/** What a guest sees: the finding and its decisions, nothing else of the station. */
-export const sharedFinding = finding.omit({ trial: true }).extend({ linkExpiresAt: instant });
+/** What a guest sees: the finding and its decisions, nothing else of the station; `trial` is null for them. */
+export const sharedFinding = finding.extend({ linkExpiresAt: instant });
 export type SharedFinding = z.infer<typeof sharedFinding>;
 
 export const readSharedFinding = endpoint({

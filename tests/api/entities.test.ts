@@ -314,7 +314,7 @@ const samples: Sample[] = [
     nightDigests: [json],
     evidence: Buffer.from('packed'),
     dwellCount: 412,
-    pictures: { rose: '<svg/>' },
+    pictures: { rose: { whole: '<svg/>', sheets: ['<svg/>'] } },
     programVersion: '0.1.0',
     frozenBy: userId,
     frozenByName: 'Aoife',

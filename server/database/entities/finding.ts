@@ -64,9 +64,9 @@ export class Finding {
   @Column({ name: 'dwell_count', type: 'integer' })
   dwellCount!: number;
 
-  /** SVG by name of the picture. */
+  /** SVG by name of the picture, whole and in sheets for paper. */
   @Column({ type: 'jsonb' })
-  pictures!: Record<string, string>;
+  pictures!: Record<string, { whole: string; sheets: string[] }>;
 
   @Column({ name: 'program_version', type: 'text' })
   programVersion!: string;
