@@ -139,15 +139,17 @@ export const separability: MethodEntry = {
     const before = fitSwap(swapUnits.slice(0, 1));
     const after = fitSwap(swapUnits);
     const code = (fit: typeof before, separable: boolean) =>
-      verdict({
-        estimate: fit.coefficients[0]!.estimate,
-        interval: fit.coefficients[0]!.interval,
-        interval90: null,
-        clusters: fit.clusters,
-        nights: 3,
-        separable,
-        minClusters: 4,
-      }).code.replaceAll('-', ' ');
+      verdictWords(
+        verdict({
+          estimate: fit.coefficients[0]!.estimate,
+          interval: fit.coefficients[0]!.interval,
+          interval90: null,
+          clusters: fit.clusters,
+          nights: 3,
+          separable,
+          minClusters: 4,
+        }).code,
+      );
     const said = (fit: typeof before) => fit.coefficients[0]!.reason !== 'cannot-be-separated';
     return {
       words: 'The example of the receiver offsets, before and after the swap:',
@@ -283,6 +285,9 @@ export const p: MethodEntry = {
   related: ['interval', 'adjusted-p', 'signed-rank'],
 };
 
+const verdictWords = (code: string) =>
+  code.replaceAll('-', ' ').replace(/^([ab]) /, (_, side: string) => `${side.toUpperCase()} `);
+
 const trials: readonly { name: string; estimate: number; se: number; df: number; nights: number }[] = [
   { name: 'first', estimate: 1.8, se: 0.36, df: 60, nights: 14 },
   { name: 'second', estimate: 1.1, se: 0.36, df: 60, nights: 14 },
@@ -307,7 +312,7 @@ export const verdictEntry: MethodEntry = {
         ...{ estimate: db, interval: wide, interval90: narrow, nights },
         ...{ clusters: df + 1, margin: 1, separable: true },
       });
-      return { name, db, wide, narrow, nights, words: code.replaceAll('-', ' ').replace(/^a /, 'A ') };
+      return { name, db, wide, narrow, nights, words: verdictWords(code) };
     });
     return {
       words: 'Five trials with a margin of 1 dB:',

@@ -1,6 +1,10 @@
 import * as answer from './answer-entries.ts';
 import * as counted from './counted-entries.ts';
 import * as other from './other-view-entries.ts';
+import * as findings from './finding-entries.ts';
+import * as ladders from './ladder-entries.ts';
+import * as pictures from './picture-entries.ts';
+import * as watching from './watching-entries.ts';
 import type { MethodGroup } from './method-entry.ts';
 
 /** The Methods page in reading order. */
@@ -49,7 +53,22 @@ export const methodGroups: readonly MethodGroup[] = [
       other.oddsRatio,
       other.censored,
       other.halfWeight,
-      other.histogramEntry,
     ],
   },
+  {
+    key: 'pictures',
+    title: 'Where and when',
+    entries: [other.histogramEntry, pictures.mapCells, pictures.adjustedP, pictures.poolingEntry],
+  },
+  {
+    key: 'watching',
+    title: 'Watching, planning, doubting',
+    entries: [watching.peekProof, watching.planning, watching.detectable, watching.sensitivity],
+  },
+  {
+    key: 'ladder',
+    title: 'The ladder',
+    entries: [ladders.ladderEntry, ladders.chanceBest, ladders.directIndirect, ladders.components],
+  },
+  { key: 'findings', title: 'Findings', entries: [findings.finding, findings.digest] },
 ];
