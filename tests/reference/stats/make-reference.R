@@ -1,6 +1,7 @@
 # Reference values for shared/stats, from R. Run by hand in this folder: Rscript make-reference.R
-# Needs the packages sandwich, coin and jsonlite. The tests read the JSON files written here; R itself
-# is not needed to run them. Everything is drawn from one seed, so a second run writes the same files.
+# Needs the packages sandwich, coin, survival, metafor, gsl and jsonlite (Debian: r-cran-<name>). The tests
+# read the JSON files written here; R itself is not needed to run them. Everything is drawn from fixed seeds, so a
+# second run writes the same files: regenerate.mjs runs this elsewhere and compares. It takes about two minutes.
 suppressPackageStartupMessages({
   library(sandwich)
   library(coin)
@@ -230,4 +231,5 @@ for (i in 1:260) {
 write_cases("cluster-regression", regression)
 
 # ---- the other estimators, each with a seed of its own ---------------------------------------------------
-for (part in c("reference-censored.R", "reference-pool.R", "reference-planning.R", "reference-monitoring.R")) source(part)
+for (part in c("reference-ranks.R", "reference-clusters.R", "reference-censored.R", "reference-pool.R", "reference-planning.R",
+                "reference-monitoring.R")) source(part)

@@ -18,6 +18,16 @@ interface Case {
   tost: [above: number, below: number, lo: number, hi: number];
 }
 
+/** Lists of up to a thousand whole numbers; low and high are averages ten places around R's exact rank. */
+interface LongCase {
+  d: number[];
+  exact: Three;
+  pratt: Three;
+  median: number;
+  low: number[];
+  high: number[];
+}
+
 const cases = readReference<Case>('paired');
 const size = (d: number[]) => Math.max(...d.map(Math.abs));
 const three = (result: { p: number; pGreater: number; pLess: number }): Three => [
@@ -75,6 +85,30 @@ describe('paired estimators against R 4.2.2 on 220 seeded samples', () => {
           three(result).forEach((value, j) => off.check(`case ${i} p ${j}`, value, p[j]!));
         },
       );
+      expect(off.found).toEqual([]);
+    },
+  );
+
+  // Twenty exact distributions of up to a thousand tied ranks, two zero rules each.
+  it(
+    'signedRank and hodgesLehmann equal coin::wilcoxsign_test and listed averages on long tied lists',
+    { timeout: 60_000 },
+    () => {
+      const off = new Mismatches();
+      readReference<LongCase>('ranks-tied').forEach(({ d, exact, pratt, median, low, high }, i) => {
+        three(signedRank(d)).forEach((p, j) => off.check(`case ${i} p ${j}`, p, exact[j]!, 1e-8, 1e-14));
+        three(signedRank(d, { zeros: 'pratt' })).forEach((p, j) =>
+          off.check(`case ${i} Pratt ${j}`, p, pratt[j]!, 1e-8, 1e-14),
+        );
+        const { estimate, interval } = hodgesLehmann(d);
+        off.check(`case ${i} median`, estimate, median, 0);
+        // R's exact rank, or within ten places of it where ours is a normal approximation.
+        const slack = d.length <= 200 ? [1, 1] : [0, 2];
+        const within = (end: number, places: number[]) =>
+          end >= places[slack[0]!]! && end <= places[slack[1]!]!;
+        if (!within(interval![0], low)) off.found.push(`case ${i} low ${interval![0]}, R has ${low[1]}`);
+        if (!within(interval![1], high)) off.found.push(`case ${i} high ${interval![1]}, R has ${high[1]}`);
+      });
       expect(off.found).toEqual([]);
     },
   );

@@ -2,10 +2,15 @@ import { describe, expect, it } from 'vitest';
 import { clopperPearson } from '../../../shared/stats/distributions/binomial.ts';
 import {
   benjaminiHochberg,
+  censoredMean,
   clusterMean,
+  cusum,
+  ewma,
   hodgesLehmann,
   mcnemar,
   pairedT,
+  pool,
+  sampleSize,
   signedRank,
 } from '../../../shared/stats/index.ts';
 import { Mismatches } from './compare.ts';
@@ -117,5 +122,86 @@ describe('published worked examples', () => {
       [0.554983882972 / (1 - 0.554983882972), 0.997471421456 / (1 - 0.997471421456)],
       1e-9,
     );
+  });
+
+  it('Colditz et al. (1994), BCG trials; DerSimonian and Laird (1986), Paule and Mandel (1982) in R 4.2.2', () => {
+    const logRelativeRisks = [
+      -0.88931133392, -1.5853886572, -1.3480731483, -1.44155119002, -0.217547322211, -0.786115585819,
+      -1.6208982236, 0.0119523335238, -0.469417648738, -1.37134480347, -0.339358828338, 0.445913400571,
+      -0.0173139482169,
+    ];
+    const variances = [
+      0.325584765004, 0.194581121398, 0.415367965368, 0.0200100319022, 0.0512101721696, 0.00690561845591,
+      0.223017247572, 0.00396157929782, 0.0564342104632, 0.073024793613, 0.0124122139716, 0.5325058452,
+      0.071404659684,
+    ];
+    const { dersimonianLaird, pauleMandel, q, iSquared, ...chosen } = pool(
+      logRelativeRisks,
+      variances.map(Math.sqrt),
+    );
+    expectClose(
+      [dersimonianLaird.tau2, dersimonianLaird.estimate, dersimonianLaird.se],
+      [0.308760262862, -0.714117222073, 0.178742089535],
+      1e-7,
+    );
+    expectClose(
+      [pauleMandel.tau2, pauleMandel.estimate, pauleMandel.se],
+      [0.318068452205, -0.714968153493, 0.180892191538],
+      1e-7,
+    );
+    expectClose([q, 100 * iSquared], [152.233008082, 92.1173468546], 1e-7);
+    expectClose([chosen.tau2, chosen.se], [pauleMandel.tau2, pauleMandel.se], 0);
+  });
+
+  it('NIST/SEMATECH e-Handbook 6.3.2.3, tabular CUSUM: sums as printed, out of control from the 14th value', () => {
+    const values = [
+      324.925, 324.675, 324.725, 324.35, 325.35, 325.225, 324.125, 324.525, 325.225, 324.6, 324.625, 325.15,
+      328.325, 327.25, 327.825, 328.5, 326.675, 327.775, 326.875, 328.35,
+    ];
+    const high = [
+      0, 0, 0, 0, 0.0325, 0, 0, 0, 0, 0, 0, 0, 3.0075, 4.94, 7.4475, 10.63, 11.9875, 14.445, 16.0025, 19.035,
+    ];
+    const low = [0, 0.0075, 0, 0.3325, 0, 0, 0.5575, 0.715, 0.1725, 0.255, 0.3125, 0, 0, 0, 0, 0, 0, 0, 0, 0];
+    const result = cusum(values, { target: 325, k: 0.3175, h: 4.1959 });
+    const off = new Mismatches();
+    high.forEach((value, i) => off.check(`high ${i}`, result.high[i]!, value, 1e-9, 1e-11));
+    low.forEach((value, i) => off.check(`low ${i}`, result.low[i]!, value, 1e-9, 1e-11));
+    expect(off.found).toEqual([]);
+    expect(result.firstAlarmIndex).toBe(13);
+    expect(result.alarms).toEqual([{ index: 13, side: 'high', since: 12 }]);
+  });
+
+  it('NIST/SEMATECH e-Handbook 6.3.2.4, EWMA chart: means to two decimals, limits to four, in control', () => {
+    const values = [
+      52, 47, 53, 49.3, 50.1, 47, 51, 50.1, 51.2, 50.5, 49.6, 47.6, 49.9, 51.3, 47.8, 51.2, 52.6, 52.4, 53.6,
+      52.1,
+    ];
+    const printed = [
+      50.6, 49.52, 50.56, 50.18, 50.16, 49.21, 49.75, 49.85, 50.26, 50.33, 50.11, 49.36, 49.52, 50.05, 49.38,
+      49.92, 50.73, 51.23, 51.94, 51.99,
+    ];
+    const options = { lambda: 0.3, center: 50, sd: 2.0539, k: 3, limits: 'asymptotic' } as const;
+    const result = ewma(values, options);
+    const off = new Mismatches();
+    printed.forEach((value, i) => off.check(`mean ${i}`, result.ewma[i]!, value, 0, 0.0050001));
+    off.check('lower limit', result.asymptotic[0], 47.4115, 0, 0.0001);
+    off.check('upper limit', result.asymptotic[1], 52.5884, 0, 0.0001);
+    expect(off.found).toEqual([]);
+    expect(result.firstAlarmIndex).toBeNull();
+  });
+
+  it('Tobin (1958), durable goods, left-censored at 0; R 4.2.2 survival::survreg(dist = "gaussian")', () => {
+    const observed = [0.7, 3.7, 3.0, 10.4, 1.5, 3.5, 6.1];
+    const lower = [...observed, ...new Array<number>(13).fill(-Infinity)];
+    const upper = [...observed, ...new Array<number>(13).fill(0)];
+    const { estimate, sd, logLikelihood, exact, leftCensored } = censoredMean({ lower, upper });
+    expectClose([estimate, sd, logLikelihood], [-2.227439439818, 5.945262217102, -29.492199548178], 1e-6);
+    expect([exact, leftCensored]).toEqual([7, 13]);
+  });
+
+  it('R 4.2.2 power.t.test(delta = 1, sd = 4, power = 0.8, type = "paired"): 127.516 pairs', () => {
+    const { n, whole } = sampleSize({ sd: 4, difference: 1, power: 0.8 });
+    expectClose([n], [127.516137398], 1e-4);
+    expect(whole).toBe(128);
   });
 });
