@@ -7,7 +7,7 @@ import type { PrintedFinding } from './facts.ts';
 import { ink, Sheet } from './sheet.ts';
 import { columnsHeight, drawColumns, drawFacts } from './tables.ts';
 import type { Column } from './tables.ts';
-import { drawVerdictScale, verdictScaleHeight } from './verdict-scale.ts';
+import { drawVerdictScale } from './verdict-scale.ts';
 
 export interface PdfInput {
   finding: PrintedFinding;
@@ -33,7 +33,7 @@ export async function drawFinding({ finding, pictures, paper }: PdfInput): Promi
   drawRecord(sheet, finding);
   drawHowToRead(sheet, finding);
   const { station, title, frozenAt, digest } = finding;
-  const foot = `${station.callSign}   ${title}   frozen ${formatUtcDay(frozenAt)}   ${digest.slice(0, 16)}`;
+  const foot = `${station.callSign}   frozen ${formatUtcDay(frozenAt)}   ${digest.slice(0, 16)}   ${title}`;
   return sheet.finish((page, pages) => [foot, `page ${page} of ${pages}`]);
 }
 
@@ -73,7 +73,7 @@ function drawVerdict(sheet: Sheet, finding: PrintedFinding): void {
   const answer = facts.answerOf(finding);
   sheet.paragraph(answer.verdict.sentence, { size: 16, weight: 600, after: 12 });
   for (const cure of answer.verdict.cures) sheet.paragraph(cure, { size: 10, after: 3 });
-  sheet.keep(verdictScaleHeight);
+  if (answer.verdict.cures.length > 0) sheet.space(6);
   drawVerdictScale(sheet, answer);
   const { units, stations, nights } = answer.counts;
   const small: [string, number][] = [
@@ -185,13 +185,14 @@ function drawFairness(sheet: Sheet, finding: PrintedFinding): void {
 
 function drawOffsets(sheet: Sheet, finding: PrintedFinding): void {
   const offsets = facts.offsetFacts(finding);
+  const { separable } = facts.answerOf(finding).fairness;
   sheet.heading('Receivers', 40);
-  sheet.paragraph(
-    offsets.length === 0
+  const words = !separable
+    ? 'The differences between the receivers cannot be told from those between the antennas.'
+    : offsets.length === 0
       ? 'No difference between receivers had to be taken out.'
-      : 'How much more a receiver reports than another on the same antenna. These differences are taken out of every number above.',
-    { size: 9.5, colour: ink.muted, after: 3 },
-  );
+      : 'How much more a receiver reports than another on the same antenna. These differences are taken out of every number above.';
+  sheet.paragraph(words, { size: 9.5, colour: ink.muted, after: 3 });
   drawFacts(sheet, offsets, 0.5);
 }
 

@@ -26,12 +26,14 @@ function drawRow(
     .stroke(ink.line);
 }
 
-/** Lines "what ... how much" over the whole width; a row stays whole. */
+/** Lines "what ... how much" over the whole width; a row stays whole, and the last one has company. */
 export function drawFacts(sheet: Sheet, facts: readonly Fact[], whatShare = 0.3): void {
   const whatWidth = sheet.width * whatShare;
-  for (const fact of facts) {
-    const height = rowHeight(sheet, fact, whatWidth, sheet.width - whatWidth - 8);
-    sheet.keep(height);
+  const heights = facts.map((fact) => rowHeight(sheet, fact, whatWidth, sheet.width - whatWidth - 8));
+  for (const [index, fact] of facts.entries()) {
+    const height = heights[index]!;
+    // The last row does not stand on the next page alone.
+    sheet.keep(index === facts.length - 2 ? height + heights[index + 1]! : height);
     drawRow(sheet, fact, { x: sheet.left, y: sheet.y, width: sheet.width, whatWidth, height }, 'left');
     sheet.y += height;
   }

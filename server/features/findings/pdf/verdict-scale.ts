@@ -5,7 +5,8 @@ import { ink } from './sheet.ts';
 import type { Sheet } from './sheet.ts';
 
 const barHeight = 26;
-export const verdictScaleHeight = 84;
+/** Below the names: bar, ticks and the words under them. */
+const belowNames = 66;
 
 /** The answer on a dB scale: the margin shaded, zero marked, the interval as a bar, the estimate as a dot. */
 export function drawVerdictScale(sheet: Sheet, answer: ComparisonAnswer): void {
@@ -14,17 +15,18 @@ export function drawVerdictScale(sheet: Sheet, answer: ComparisonAnswer): void {
   const inset = 14;
   const at = (db: number) => left + inset + placeOnScale(db, scale.limitDb, width - 2 * inset);
   const { a, b } = answer.antennas;
-  const top = sheet.y;
-  const style = { y: top, width: width / 2 - 6, size: 9.5, weight: 600 as const };
-  sheet.write(`\u2190 ${b.name} hears better`, { ...style, x: left, colour: ink.b });
-  sheet.write(`${a.name} hears better \u2192`, {
-    ...style,
-    x: left + width / 2 + 6,
-    colour: ink.a,
-    align: 'right',
-  });
+  const names = { b: `\u2190 ${b.name} hears better`, a: `${a.name} hears better \u2192` };
+  const style = { width: width / 2 - 6, size: 9.5, weight: 600 as const };
+  const namesHeight = Math.max(
+    sheet.heightOf(names.a, style.width, style),
+    sheet.heightOf(names.b, style.width, style),
+  );
+  sheet.keep(namesHeight + belowNames);
+  const { y } = sheet;
+  sheet.write(names.b, { ...style, x: left, y, colour: ink.b });
+  sheet.write(names.a, { ...style, x: left + width / 2 + 6, y, colour: ink.a, align: 'right' });
 
-  const bar = top + 18;
+  const bar = y + namesHeight + 5;
   doc.rect(at(-answer.marginDb), bar, at(answer.marginDb) - at(-answer.marginDb), barHeight);
   doc.fillOpacity(0.22).fill(ink.edge).fillOpacity(1);
   const floor = bar + barHeight;
@@ -63,5 +65,5 @@ export function drawVerdictScale(sheet: Sheet, answer: ComparisonAnswer): void {
     ? `${formatDb(estimate.estimateDb)}, 95\u2009% interval ${formatDbInterval(estimate.interval95Db)}. ${margin}`
     : `No estimate. ${margin}`;
   sheet.write(words, { x: left, y: floor + 20, width, size: 9, colour: ink.muted });
-  sheet.y = top + verdictScaleHeight;
+  sheet.y = bar + belowNames;
 }
