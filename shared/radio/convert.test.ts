@@ -1,5 +1,12 @@
 import { describe, expect, it } from 'vitest';
-import { feetToMetres, metresToFeet, metresToWavelengths, wavelengthMetres } from './convert.ts';
+import {
+  feetToMetres,
+  heightMetresAtElevation,
+  impedanceRatio,
+  metresToFeet,
+  metresToWavelengths,
+  wavelengthMetres,
+} from './convert.ts';
 
 describe('conversions', () => {
   // Common practice in the trade; the foot is 0.3048 m exactly (international agreement of 1959).
@@ -16,5 +23,23 @@ describe('conversions', () => {
 
   it.each([0, -1830, Number.NaN])('refuses the frequency %d kHz by name', (freqKhz) => {
     expect(() => wavelengthMetres(freqKhz)).toThrow(RangeError(`freqKhz must be positive, was ${freqKhz}`));
+  });
+
+  // Common practice in the trade: 15 degrees at a kilometre takes a source 267.9 m up.
+  it('puts a source 267.9 metres up for 15 degrees at 1000 metres', () => {
+    expect(Math.abs(heightMetresAtElevation(1000, 15) - 267.9)).toBeLessThan(0.05);
+    expect(heightMetresAtElevation(500, 0)).toBe(0);
+    expect(heightMetresAtElevation(50, 45)).toBeCloseTo(50, 12);
+    expect(() => heightMetresAtElevation(0, 15)).toThrow(/^distanceMetres /);
+    expect(() => heightMetresAtElevation(100, 90)).toThrow(/^elevationDeg /);
+    expect(() => heightMetresAtElevation(100, Number.NaN)).toThrow(/^elevationDeg /);
+  });
+
+  // Common practice in the trade: 3 to 6 turns match impedances of 1 to 4.
+  it('squares the turns of a transformer into its impedance ratio', () => {
+    expect(impedanceRatio(3, 6)).toBe(4);
+    expect(impedanceRatio(6, 3)).toBe(4);
+    expect(() => impedanceRatio(0, 6)).toThrow(/^turns /);
+    expect(() => impedanceRatio(3, Number.NaN)).toThrow(/^otherTurns /);
   });
 });

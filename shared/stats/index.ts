@@ -20,3 +20,4 @@ export * from './sample-size.ts';
 export * from './sign-test.ts';
 export * from './signed-rank.ts';
 export * from './verdict.ts';
+export * from './williams-square.ts';
