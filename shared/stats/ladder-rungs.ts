@@ -44,22 +44,21 @@ export interface LadderScale {
 }
 
 /**
- * Values of one group against its mean or reference. The mean is taken over the largest part of the group
- * that more than one cluster holds together: a newcomer heard in one station-night must not move the rest.
+ * Values of one group against its mean or reference. The mean is taken over the core, the part of more than
+ * half of the group that no single cluster holds together: a newcomer heard in one station-night must not
+ * move the rest. Without a core it is the mean of all, and nothing has an error against it.
  */
 function rungsOfGroup(columns: number[], { fit, solid, reference, tie }: LadderScale) {
   const parts = toldGroups(0, columns.length, (x, y) => solid(columns[x]!, columns[y]!));
-  const core = parts
-    .reduce((most, part) => (part.length > most.length ? part : most))
-    .map((x) => columns[x]!);
-  const counted = core.length > 1 ? core : columns;
+  const core = (parts.find((part) => 2 * part.length > columns.length) ?? []).map((x) => columns[x]!);
+  const counted = core.length > 0 ? core : columns;
   const against = columns.includes(reference) ? [reference] : counted;
   const origin = new Float64Array(fit.rank);
   for (const j of against) fit.axis[j]!.forEach((value, c) => (origin[c]! += value / against.length));
   const anchor = against[0]!;
   const rungs = columns.map((column) => {
     const axis = fit.axis[column]!.map((value, c) => value - origin[c]!);
-    const held = solid(column, anchor) && (against.length === 1 || core.length > 1);
+    const held = solid(column, anchor) && (anchor === reference || core.length > 0);
     return { column, axis, held, inCore: core.includes(column), ...fit.estimate(axis, held) };
   });
   const rankOf = (estimate: number) => 1 + rungs.filter((other) => other.estimate > estimate + tie).length;

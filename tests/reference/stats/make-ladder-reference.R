@@ -44,7 +44,7 @@ contrast <- function(f, c, level) {
   list(estimate, se, 2 * pt(-abs(t), f$df), estimate - reach, estimate + reach)
 }
 
-# Groups of columns that one scale holds, and the part of a group that no single cluster carries.
+# Groups of columns that one scale holds, and the part (more than half) of a group that no single cluster carries.
 groups_of <- function(columns, same) {
   groups <- list()
   for (j in columns) {
@@ -64,6 +64,7 @@ scale_of <- function(f, group, level, reference) {
   solid <- function(i, j) all(vapply(f$spaces, fixed, TRUE, unit(k, i, j)))
   parts <- groups_of(group, solid)
   core <- parts[[which.max(lengths(parts))]]
+  if (2 * length(core) <= length(group)) core <- NULL
   against <- if (length(core) > 1) core else group
   if (reference %in% group) against <- reference
   lapply(group, function(j) {
@@ -79,6 +80,7 @@ chances <- function(f, group, draws) {
   solid <- function(i, j) all(vapply(f$spaces, fixed, TRUE, unit(k, i, j)))
   parts <- groups_of(group, solid)
   core <- parts[[which.max(lengths(parts))]]
+  if (2 * length(core) <= length(group)) core <- NULL
   if (length(core) < 2 || is.null(f$v)) return(list())
   c <- sapply(core[-1], function(j) unit(k, j, core[1]))[f$ok, , drop = FALSE]
   v <- crossprod(c, f$v %*% c)
