@@ -4,8 +4,10 @@ import { auditRoutes } from './audit/audit.routes.ts';
 import { authRoutes } from './auth/auth.routes.ts';
 import { profileRoutes } from './auth/profile.routes.ts';
 import { comparisonRoutes } from './comparisons/comparison.routes.ts';
+import { createComparisonService } from './comparisons/comparison.service.ts';
 import { dwellRoutes } from './dwells/dwell.routes.ts';
 import { eventRoutes } from './events/event.routes.ts';
+import { findingRoutes } from './findings/finding.routes.ts';
 import { healthRoutes } from './health/health.routes.ts';
 import { importRoutes } from './imports/import.routes.ts';
 import { jobRoutes } from './jobs/job.routes.ts';
@@ -31,6 +33,7 @@ export function apiRoutes(deps: Deps): Route[] {
     ...comparisonRoutes(deps),
     ...tonightRoutes(deps),
     ...trialRoutes(deps),
+    ...findingRoutes(deps, createComparisonService(deps).prepare),
     ...importRoutes(deps),
     ...jobRoutes(deps),
     ...eventRoutes(deps),

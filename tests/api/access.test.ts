@@ -85,6 +85,9 @@ describe('access to the API', () => {
       'POST /stations/:stationId/comparisons/sensitivity',
       'POST /stations/:stationId/dwells/preview',
       'POST /stations/:stationId/imports/:importId/preview',
+      'POST /stations/:stationId/findings/:findingId/recompute',
+      'POST /shared-findings/read',
+      'POST /shared-findings/report.pdf',
     ];
     const silent = api.routes.filter((r) => r.endpoint.method !== 'GET' && r.audit === null).map(title);
     expect(silent.filter((t) => !readsByPost.includes(t))).toEqual([]);
@@ -110,6 +113,8 @@ describe('access to the API', () => {
       '/auth/sign-out',
       '/health/live',
       '/health/ready',
+      '/shared-findings/read',
+      '/shared-findings/report.pdf',
     ]);
   });
 

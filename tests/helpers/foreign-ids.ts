@@ -1,11 +1,15 @@
+import type { DataSource } from 'typeorm';
 import { saveTrial } from '../../shared/contracts/comparison.ts';
 import { applyDwellChanges } from '../../shared/contracts/dwell.ts';
 import type { BodyInput } from '../../shared/contracts/endpoint.ts';
+import { createShare } from '../../shared/contracts/finding.ts';
 import { saveMapping, uploadImport } from '../../shared/contracts/import.ts';
 import * as feedContract from '../../shared/contracts/feed.ts';
 import * as memberContract from '../../shared/contracts/member.ts';
 import * as positionContract from '../../shared/contracts/position.ts';
 import * as tokenContract from '../../shared/contracts/token.ts';
+import { fixtureAnswer } from '../../shared/pictures/answer.fixture.ts';
+import { Finding } from '../../server/database/entities/finding.ts';
 import type { TestApi, TestReply } from './api.ts';
 import type { StationRows } from './station-rows.ts';
 
@@ -124,6 +128,31 @@ export function walks(mine: StationRows, f: Ids): Map<string, Walk[]> {
       ],
     ],
     ['DELETE /stations/:stationId/trials/:trialId', path],
+    [
+      'POST /stations/:stationId/findings',
+      [
+        send({ title: 'Taken', trialId: f.trialId }, 'trialId'),
+        ...questions((q) => ({ title: 'Taken', question: q })),
+      ],
+    ],
+    ['GET /stations/:stationId/findings/:findingId', path],
+    ['POST /stations/:stationId/findings/:findingId/recompute', path],
+    [
+      'POST /stations/:stationId/findings/:findingId/decisions',
+      [send({ decision: 'keep', reason: 'Taken' })],
+    ],
+    ['GET /stations/:stationId/findings/:findingId/shares', path],
+    ['POST /stations/:stationId/findings/:findingId/shares', [send({ label: 'Taken' })]],
+    [
+      'DELETE /stations/:stationId/findings/:findingId/shares/:shareId',
+      [send(), { ...send(), params: { findingId: f.ownFindingId! } }],
+    ],
+    ['GET /stations/:stationId/findings/:findingId/report.pdf', path],
+    ['GET /stations/:stationId/findings/:findingId/units.csv', path],
+    [
+      'GET /stations/:stationId/findings/:findingId/pictures/:picture.svg',
+      [{ ...send(), params: { picture: 'rose' } }],
+    ],
     ['GET /stations/:stationId/imports/:importId', path],
     [
       'POST /stations/:stationId/imports/:importId/preview',
@@ -257,9 +286,42 @@ export async function fillStations(api: TestApi, own: Manned, foreign: Manned): 
       }),
     ),
   };
+  ids.findingId = await storeFinding(dataSource, foreign, 'Foreign');
+  ids.ownFindingId = await storeFinding(dataSource, own, 'Own');
+  const shared = await api.call(createShare, {
+    params: { stationId: foreign.stationId, findingId: ids.findingId },
+    token: foreign.token,
+    body: { label: 'Foreign' },
+  });
+  ids.shareId = createShare.reply.parse(shared.body).share.id;
   const [job] = (await dataSource.query('SELECT id FROM job WHERE station_id = $1 LIMIT 1', [
     foreign.stationId,
   ])) as [{ id: number }];
   ids.jobId = job.id;
   return ids;
+}
+
+/** A finding of an invented answer: freezing a real one takes a station with spots. */
+async function storeFinding(dataSource: DataSource, of: Manned, title: string): Promise<number> {
+  const answer = fixtureAnswer();
+  const { antennas, verdict, estimate, marginDb, counts, question } = answer;
+  const { id } = await dataSource.getRepository(Finding).save({
+    stationId: of.stationId,
+    title,
+    question: { ...question },
+    sentence: 'Does North-east wire hear better than Vertical?',
+    headline: { antennas, verdict, estimate, marginDb, counts },
+    answer: { ...answer },
+    circumstances: {},
+    firstNight: '2026-11-01',
+    lastNight: '2026-11-14',
+    digest: Buffer.alloc(32),
+    nightDigests: [],
+    evidence: Buffer.alloc(0),
+    dwellCount: 0,
+    pictures: {},
+    programVersion: '0.1.0',
+    frozenByName: 'manager',
+  });
+  return id;
 }

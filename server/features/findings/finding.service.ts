@@ -20,6 +20,7 @@ import type { Deps } from '../../platform/deps.ts';
 import { Conflict, InvalidRequest, NotFound } from '../../platform/errors.ts';
 import { programVersion } from '../../platform/program-version.ts';
 import type { Actor } from '../../platform/route.ts';
+import { unknownIds } from '../comparisons/question-ids.read-model.ts';
 import { listReceivers, readStation } from '../station/station.read-model.ts';
 import { listTrials } from '../trials/trial.read-model.ts';
 import * as around from './circumstances.read-model.ts';
@@ -61,7 +62,10 @@ export function createFindingService(deps: Deps, ask: AskQuestion) {
         { path: 'body.trialId', message: 'The station has no such trial.' },
       ]);
     }
-    return (body.question ?? trial?.question)!;
+    const question = (body.question ?? trial?.question)!;
+    const unknown = await unknownIds(manager, stationId, question, 'body.question');
+    if (unknown.length > 0) throw new InvalidRequest('Some fields have to change.', unknown);
+    return question;
   }
 
   return {
