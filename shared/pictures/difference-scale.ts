@@ -1,6 +1,6 @@
 import type { ComparisonAnswer } from '../contracts/comparison.ts';
 
-/** The one dB axis of all four pictures and of the verdict: symmetric about zero. */
+/** The one dB axis of all pictures and of the verdict: symmetric about zero. */
 export interface DifferenceScale {
   /** The axis runs from -limitDb to +limitDb. */
   limitDb: number;
@@ -11,11 +11,15 @@ export interface DifferenceScale {
 
 /** Units beyond this share are gathered at the ends, so that a few wild ones don't flatten every picture. */
 const shownShare = 0.95;
+/** How far the intervals that stand beside the estimate may widen the axis; further out they are cut, with a mark. */
+const besideShare = 1.5;
 const stepsDb = [0.5, 1, 2, 3, 4, 5, 10, 20, 50];
 
 /**
  * Chooses the axis from the answer: it holds 95 % of the units, the whole interval of the estimate, the
- * margin and the estimates of all cells that speak. An answer without data gets 6 dB either way.
+ * margin, the censored estimate and the estimates of all cells that speak. The intervals of the censored
+ * estimate and of the last night's peek-proof one widen it by half at most; those of earlier nights, which
+ * may be wild, not at all. An answer without data gets 6 dB either way.
  */
 export function differenceScale(answer: ComparisonAnswer): DifferenceScale {
   const speaking = [...answer.sectors, ...answer.bandHours.cells, ...answer.nights].filter(
@@ -26,12 +30,18 @@ export function differenceScale(answer: ComparisonAnswer): DifferenceScale {
     (cell) => cell.speaks && cell.estimateDb !== null,
   );
   const interval = answer.estimate?.interval95Db ?? [0, 0];
-  const widest = Math.max(
+  const needed = Math.max(
     unitsWithinDb(answer),
     ...interval.map(Math.abs),
     answer.marginDb * 1.5,
+    Math.abs(answer.censored?.estimateDb ?? 0),
     ...estimates,
   );
+  const beside = [
+    ...(answer.censored?.intervalDb ?? []),
+    ...(answer.peekProof?.points.at(-1)?.intervalDb ?? []),
+  ].map(Math.abs);
+  const widest = Math.max(needed, ...beside.map((db) => Math.min(db, needed * besideShare)));
   const wanted = answer.counts.units === 0 ? 6 : widest;
   const stepDb = stepsDb.find((step) => Math.ceil(wanted / step - 1e-9) <= 4) ?? wanted / 4;
   const limitDb = stepDb * Math.max(1, Math.ceil(wanted / stepDb - 1e-9));

@@ -24,7 +24,35 @@ export function heardOnlyWords(heardOnly: HeardOnly, antennas: ComparisonAnswer[
   }${interval}.`;
 }
 
-function oddsWords(interval: HeardOnly['oddsRatioInterval'], upsideDown: boolean): string {
+/** Station-nights that one antenna alone heard, by majority, in one direction or in all. */
+export interface AloneCounts {
+  onlyA: number;
+  onlyB: number;
+  /** null: without limit, B was never alone. */
+  oddsRatio: number | null;
+  intervalRatio: readonly [number, number | null] | null;
+  /** null: nothing to test. */
+  p: number | null;
+}
+
+/** What such counts say. */
+export function aloneWords(
+  { onlyA, onlyB, oddsRatio, intervalRatio, p }: AloneCounts,
+  { a, b }: ComparisonAnswer['antennas'],
+  pName: string,
+): string {
+  const counts = `${a.name} alone in ${countOf(onlyA, 'station-night')}, ${b.name} alone in ${onlyB}`;
+  if (p === null) return `${counts}.`;
+  const turned = oddsRatio !== null && oddsRatio < 1;
+  const odds = oddsRatio === null || oddsRatio === 0 ? null : turned ? 1 / oddsRatio : oddsRatio;
+  const times =
+    odds === null
+      ? 'never the other way round'
+      : `${(turned ? b : a).name} ${formatNumber(odds)} times as often`;
+  return `${counts}: ${times}${oddsWords(intervalRatio, turned)}, ${pName} ${pText(p)}.`;
+}
+
+function oddsWords(interval: AloneCounts['intervalRatio'], upsideDown: boolean): string {
   if (interval === null) return '';
   const [low, high] = interval;
   const write = (value: number | null) =>

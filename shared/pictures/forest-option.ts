@@ -2,19 +2,9 @@ import type { CustomSeriesOption } from 'echarts/charts';
 import type { ComparisonCell } from '../contracts/comparison.ts';
 import { formatDb, formatDbInterval } from '../format.ts';
 import { cellTitle, cellWords, lightsUp } from './cell-words.ts';
+import { intervalMark } from './interval-mark.ts';
 import { differenceAxis, differenceGround, litLine, overlay, verticalLine } from './picture.ts';
 import type { Picture, PictureContext } from './picture.ts';
-
-/** Ends of an interval as they are drawn: cut at the axis, with a mark where it runs on. */
-export function cutInterval(intervalDb: readonly [number, number], limitDb: number) {
-  const cut = (db: number) => Math.max(-limitDb, Math.min(limitDb, db));
-  return {
-    fromDb: cut(intervalDb[0]),
-    toDb: cut(intervalDb[1]),
-    runsOnLow: intervalDb[0] < -limitDb,
-    runsOnHigh: intervalDb[1] > limitDb,
-  };
-}
 
 /** How steady: one line a night, and the answer over all of them below. */
 export function forestPicture(context: PictureContext): Picture {
@@ -56,45 +46,13 @@ export function forestPicture(context: PictureContext): Picture {
   function mark(cell: ComparisonCell, at: (db: number) => number, y: number, ink: string): object[] {
     if (cell.estimateDb === null) return [];
     const colour = !cell.speaks ? tokens.muted : cell.estimateDb >= 0 ? tokens['diff-a'] : tokens['diff-b'];
-    const children: object[] = [];
-    if (cell.intervalDb !== null) {
-      const cut = cutInterval(cell.intervalDb, scale.limitDb);
-      const [x1, x2] = [at(cut.fromDb), at(cut.toDb)];
-      children.push({
-        type: 'line',
-        shape: { x1, y1: y, x2, y2: y },
-        style: { stroke: colour, lineWidth: 2, lineDash: cell.speaks ? [] : [3, 3] },
-      });
-      for (const [runsOn, x, way] of [
-        [cut.runsOnLow, x1, 1],
-        [cut.runsOnHigh, x2, -1],
-      ] as const) {
-        if (!runsOn) continue;
-        children.push({
-          type: 'polyline',
-          shape: {
-            points: [
-              [x + 5 * way, y - 4],
-              [x, y],
-              [x + 5 * way, y + 4],
-            ],
-          },
-          style: { stroke: colour, fill: 'none', lineWidth: 2 },
-        });
-      }
-    }
-    const radius = Math.min(rowPx / 2 - 1, 2.5 + 3.5 * Math.sqrt(cell.units / mostUnits));
-    const inside = Math.abs(cell.estimateDb) <= scale.limitDb;
-    if (inside) {
-      children.push({
-        type: 'circle',
-        shape: { cx: at(cell.estimateDb), cy: y, r: radius },
-        style: cell.speaks
-          ? { fill: colour, stroke: ink, lineWidth: 1 }
-          : { fill: tokens.surface, stroke: colour, lineWidth: 1.5 },
-      });
-    }
-    return children;
+    return intervalMark({ value: cell.estimateDb, interval: cell.intervalDb, limit: scale.limitDb }, at, y, {
+      colour,
+      ink,
+      surface: tokens.surface,
+      radius: Math.min(rowPx / 2 - 1, 2.5 + 3.5 * Math.sqrt(cell.units / mostUnits)),
+      hollow: !cell.speaks,
+    });
   }
 
   const overall = overlay('overall', 0, 4, (api) => {

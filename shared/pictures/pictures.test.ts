@@ -8,8 +8,9 @@ import { differenceColour } from './chart-tokens.ts';
 import { cell, fixtureAnswer, fixtureTokens } from './answer.fixture.ts';
 import { bandHourPicture, hourOrder } from './band-hour-option.ts';
 import { differenceScale } from './difference-scale.ts';
-import { cutInterval, forestPicture } from './forest-option.ts';
+import { forestPicture } from './forest-option.ts';
 import { barTitle, histogramBars, histogramPicture } from './histogram-option.ts';
+import { cutInterval } from './interval-mark.ts';
 import { inkOn } from './picture.ts';
 import type { Picture, PictureContext } from './picture.ts';
 import { rosePicture } from './rose-option.ts';
@@ -192,8 +193,8 @@ describe('the night by night forest', () => {
   });
 
   it('marks where an interval runs on beyond the axis', () => {
-    expect(cutInterval([-30, 2], 12)).toEqual({ fromDb: -12, toDb: 2, runsOnLow: true, runsOnHigh: false });
-    expect(cutInterval([1, 30], 12)).toEqual({ fromDb: 1, toDb: 12, runsOnLow: false, runsOnHigh: true });
+    expect(cutInterval([-30, 2], 12)).toEqual({ from: -12, to: 2, runsOnLow: true, runsOnHigh: false });
+    expect(cutInterval([1, 30], 12)).toEqual({ from: 1, to: 12, runsOnLow: false, runsOnHigh: true });
   });
 
   it('draws a night without enough evidence hollow and dashed', () => {

@@ -34,6 +34,9 @@ export interface AskedQuestion {
   undoNarrowing: () => void;
 }
 
+/** Parts of the address that belong to the page, not to the question; they outlive a new question. */
+const pageKeys = ['trial', 'wall', 'cells'] as const;
+
 /** The question of the Compare page: it lives in the address, so that a link is a question. */
 export function useAskedQuestion(stationId: ComputedRef<number>): AskedQuestion {
   const route = useRoute();
@@ -42,7 +45,7 @@ export function useAskedQuestion(stationId: ComputedRef<number>): AskedQuestion 
   const comparison = useComparisonStore();
   const trials = useTrialsStore();
 
-  const decoded = computed(() => decodeQuestion(route.query, ['trial', 'wall']));
+  const decoded = computed(() => decodeQuestion(route.query, pageKeys));
   const draft = computed(() => decoded.value.draft);
   const question = computed(() => completeQuestion(draft.value));
   const trial = computed(() => trials.trials.find(({ id }) => String(id) === route.query.trial) ?? null);
@@ -84,7 +87,7 @@ export function useAskedQuestion(stationId: ComputedRef<number>): AskedQuestion 
 
   function queryOf(next: QuestionDraft): Record<string, string> {
     const kept = Object.fromEntries(
-      ['trial', 'wall'].flatMap((key) => {
+      pageKeys.flatMap((key) => {
         const value = route.query[key];
         return typeof value === 'string' ? [[key, value]] : [];
       }),

@@ -21,6 +21,20 @@ export function narrowQuestion(draft: QuestionDraft, cell: ComparisonCell, basis
   return narrowed;
 }
 
+/** The question about everything that these two antennas were on; rules and margin stay as they were asked. */
+export function widened(draft: QuestionDraft): QuestionDraft {
+  return {
+    ...draft,
+    bandsMetres: [],
+    hours: null,
+    sectors: [],
+    receivers: [],
+    kinds: [],
+    fromNight: null,
+    toNight: null,
+  };
+}
+
 /** The blanks that asking about a cell would change. */
 export function blanksOf(cell: ComparisonCell | null): QuestionBlank[] {
   if (cell === null) return [];

@@ -320,7 +320,7 @@ describe('the verdict', () => {
 
   it('says all of it in words', () => {
     expect(mount(VerdictScale, { props: scaleOf() }).find('[role="img"]').attributes('aria-label')).toBe(
-      'Estimate +1.8\u2009dB, 95\u2009% interval 1.1 to 2.5\u2009dB; the margin is 1.0\u2009dB either way. Positive means that North-east wire hears better.',
+      'Estimate +1.8\u2009dB, 95\u2009% interval 1.1 to 2.5\u2009dB; the margin is 1.0\u2009dB either way. With stations that one antenna alone heard: +2.9\u2009dB, 95\u2009% interval 2.1 to 3.7\u2009dB. Positive means that North-east wire hears better.',
     );
   });
 
@@ -333,14 +333,16 @@ describe('the verdict', () => {
         cures: ['Swap the two antennas for about 40 minutes.'],
       },
     });
-    const wrapper = mount(VerdictPanel, { props: scaleOf(answer) });
+    const wrapper = mount(VerdictPanel, { props: { ...scaleOf(answer), names } });
     expect(wrapper.find('.verdict-scale').exists()).toBe(false);
     expect(wrapper.find('.cures').text()).toContain('Swap the two antennas for about 40 minutes.');
   });
 
   it('says that nights are being made anew after a change of the switch log', () => {
     const preparation = { ...fixtureAnswer().preparation, nightsWaiting: 3 };
-    const wrapper = mount(VerdictPanel, { props: scaleOf(fixtureAnswer({ preparation })) });
+    const wrapper = mount(VerdictPanel, {
+      props: { ...scaleOf(fixtureAnswer({ preparation })), names },
+    });
     expect(wrapper.find('.waiting').text()).toContain(
       'Following a change of the switch log: 3 nights are being made anew.',
     );
