@@ -23,6 +23,37 @@ describe('clusterMean', () => {
     expect(moved.se! / plain.se!).toBeCloseTo(1, 7);
   });
 
+  it('moves with a shift, turns with the sign, and depends neither on order nor on names of clusters', () => {
+    const rows = fc.array(fc.tuple(fc.integer({ min: -80, max: 80 }), fc.nat({ max: 9 })), {
+      minLength: 2,
+      maxLength: 60,
+    });
+    fc.assert(
+      fc.property(rows, fc.integer({ min: -40, max: 40 }), (drawn, shift) => {
+        const y = drawn.map(([value]) => value);
+        const clusters = drawn.map(([, id]) => id);
+        const plain = clusterMean(y, clusters);
+        const moved = clusterMean(
+          y.map((value) => value + shift),
+          clusters,
+        );
+        const turned = clusterMean(
+          y.map((value) => -value).reverse(),
+          clusters.map((id) => 40 - 2 * id).reverse(),
+        );
+        expect(moved.estimate).toBeCloseTo(plain.estimate + shift, 9);
+        expect(turned.estimate).toBeCloseTo(-plain.estimate, 9);
+        expect(turned.reason).toBe(plain.reason);
+        if (plain.interval === null) return;
+        expect(moved.se! / plain.se!).toBeCloseTo(1, 8);
+        expect(turned.interval![1]).toBeCloseTo(-plain.interval[0], 7);
+        const wide = clusterMean(y, clusters, { level: 0.99 }).interval!;
+        expect(wide[0] < plain.interval[0] && plain.interval[0] < plain.estimate).toBe(true);
+        expect(plain.estimate < plain.interval[1] && plain.interval[1] < wide[1]).toBe(true);
+      }),
+    );
+  });
+
   it('says why there is no standard error', () => {
     expect(clusterMean([1, 2], [0, 0])).toMatchObject({
       estimate: 1.5,

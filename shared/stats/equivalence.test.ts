@@ -25,6 +25,22 @@ describe('equivalence', () => {
     expect(equivalence({ estimate: 0.3, se: 0.4, df: 12 }, { margin: 2 }).p!).toBeLessThan(plain.p!);
   });
 
+  it('is claimed of more estimates the wider the margin, the smaller the error and the larger alpha', () => {
+    fc.assert(
+      fc.property(
+        fc.double({ min: -1.5, max: 1.5, noNaN: true }),
+        fc.double({ min: 0.05, max: 1, noNaN: true }),
+        fc.integer({ min: 2, max: 60 }),
+        (estimate, se, df) => {
+          fc.pre(equivalence({ estimate, se, df }, { margin: 1.6 }).equivalent);
+          expect(equivalence({ estimate, se, df }, { margin: 1.9 }).equivalent).toBe(true);
+          expect(equivalence({ estimate, se: se / 2, df }, { margin: 1.6 }).equivalent).toBe(true);
+          expect(equivalence({ estimate, se, df }, { margin: 1.6, alpha: 0.1 }).equivalent).toBe(true);
+        },
+      ),
+    );
+  });
+
   it('claims nothing without a standard error', () => {
     const unknown = { pAboveLower: null, pBelowUpper: null, p: null, interval: null, equivalent: false };
     expect(equivalence({ estimate: 0, se: null, df: 4 })).toMatchObject(unknown);

@@ -17,6 +17,20 @@ describe('mcnemar', () => {
     );
   });
 
+  it('has wider intervals at a higher level, and a p that falls as the counts part', () => {
+    fc.assert(
+      fc.property(fc.integer({ min: 1, max: 200 }), fc.integer({ min: 1, max: 200 }), (a, b) => {
+        const narrow = mcnemar(a, b, { level: 0.8 });
+        const wide = mcnemar(a, b, { level: 0.99 });
+        expect(wide.interval![0]).toBeLessThan(narrow.interval![0]);
+        expect(wide.interval![1]!).toBeGreaterThan(narrow.interval![1]!);
+        // One count moved from the smaller to the larger side of the same total.
+        const [more, fewer] = [Math.max(a, b), Math.min(a, b)];
+        expect(mcnemar(more + 1, fewer - 1).p).toBeLessThan(narrow.p);
+      }),
+    );
+  });
+
   it('has no upper bound when nothing was heard on B only', () => {
     expect(mcnemar(6, 0)).toMatchObject({ oddsRatio: null, share: 1 });
     const [lo, hi] = mcnemar(6, 0).interval!;

@@ -24,6 +24,22 @@ describe('pairedT', () => {
     );
   });
 
+  it('does not depend on the order, and is wider at a higher level', () => {
+    fc.assert(
+      fc.property(sample, (d) => {
+        const plain = pairedT(d, { level: 0.9 });
+        const back = pairedT([...d].reverse(), { level: 0.9 });
+        expect(back.estimate).toBeCloseTo(plain.estimate, 10);
+        expect(back.sd).toBeCloseTo(plain.sd, 10);
+        if (plain.interval === null) return;
+        const wide = pairedT(d, { level: 0.99 }).interval!;
+        expect(wide[0] < plain.interval[0] && plain.interval[1] < wide[1]).toBe(true);
+        // The interval leaves zero out exactly when p is below 1 - level.
+        expect(plain.interval[0] > 0 || plain.interval[1] < 0).toBe(plain.p! < 1 - plain.level);
+      }),
+    );
+  });
+
   it('says nothing about the spread of equal differences', () => {
     expect(pairedT([1.7, 1.7, 1.7])).toMatchObject({
       estimate: 1.7,

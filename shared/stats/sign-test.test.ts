@@ -26,6 +26,26 @@ describe('signTest', () => {
     );
   });
 
+  it('does not depend on the order or the sizes, and holds the share in an interval that grows with the level', () => {
+    fc.assert(
+      fc.property(fc.array(fc.integer({ min: -9, max: 9 }), { minLength: 1, maxLength: 50 }), (d) => {
+        const plain = signTest(d, { level: 0.8 });
+        expect(signTest([...d].reverse(), { level: 0.8 })).toEqual(plain);
+        expect(
+          signTest(
+            d.map((value) => value ** 3),
+            { level: 0.8 },
+          ),
+        ).toEqual(plain);
+        if (plain.share === null) return;
+        const [lo, hi] = plain.interval!;
+        const wide = signTest(d, { level: 0.95 }).interval!;
+        expect(lo <= plain.share && plain.share <= hi).toBe(true);
+        expect(wide[0] <= lo && hi <= wide[1]).toBe(true);
+      }),
+    );
+  });
+
   it('decides nothing when every difference is zero', () => {
     expect(signTest([0, 0])).toMatchObject({
       chance: 0.5,
