@@ -11,6 +11,7 @@ import { findingRoutes } from './findings/finding.routes.ts';
 import { healthRoutes } from './health/health.routes.ts';
 import { importRoutes } from './imports/import.routes.ts';
 import { jobRoutes } from './jobs/job.routes.ts';
+import { ladderRoutes } from './ladder/ladder.routes.ts';
 import { memberRoutes } from './members/member.routes.ts';
 import { spotRoutes } from './spots/spot.routes.ts';
 import { stationRoutes } from './station/station.routes.ts';
@@ -31,6 +32,7 @@ export function apiRoutes(deps: Deps): Route[] {
     ...dwellRoutes(deps),
     ...spotRoutes(deps),
     ...comparisonRoutes(deps),
+    ...ladderRoutes(deps),
     ...tonightRoutes(deps),
     ...trialRoutes(deps),
     ...findingRoutes(deps, createComparisonService(deps).prepare),

@@ -83,6 +83,7 @@ describe('access to the API', () => {
       'POST /stations/:stationId/comparisons',
       'POST /stations/:stationId/comparisons/units.csv',
       'POST /stations/:stationId/comparisons/sensitivity',
+      'POST /stations/:stationId/ladder',
       'POST /stations/:stationId/dwells/preview',
       'POST /stations/:stationId/imports/:importId/preview',
       'POST /stations/:stationId/findings/:findingId/recompute',

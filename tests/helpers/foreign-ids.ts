@@ -118,6 +118,13 @@ export function walks(mine: StationRows, f: Ids): Map<string, Walk[]> {
     ['POST /stations/:stationId/comparisons', questions((q) => q)],
     ['POST /stations/:stationId/comparisons/units.csv', questions((q) => q)],
     ['POST /stations/:stationId/comparisons/sensitivity', questions((question) => ({ question }))],
+    [
+      'POST /stations/:stationId/ladder',
+      [
+        send({ receivers: [f.receiverId] }, 'receivers'),
+        send({ referenceAntennaId: f.antennaId }, 'referenceAntennaId'),
+      ],
+    ],
     ['POST /stations/:stationId/trials', questions((q) => ({ name: 'Taken', question: q }))],
     ['GET /stations/:stationId/trials/:trialId', path],
     [

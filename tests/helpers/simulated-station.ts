@@ -6,6 +6,8 @@ import {
   type ComparisonResult,
 } from '../../shared/comparison/index.ts';
 import { comparisonQuestion } from '../../shared/contracts/comparison.ts';
+import { ladderQuestion } from '../../shared/contracts/ladder.ts';
+import { answerLadder, type LadderInput, type LadderResult } from '../../shared/ladder/index.ts';
 import {
   dwellColumns,
   pairSpots,
@@ -42,11 +44,21 @@ export interface SimulatedAnswer {
 const dayMs = 86_400_000;
 const marginDb = 1;
 
+export interface SimulatedLadder {
+  answer: LadderResult;
+  /**
+   * The ladder of the truth: the same units, each with the antennas' true difference toward its call in place
+   * of what was heard.
+   */
+  truth: LadderResult;
+}
+
 /** The simulated station's nights, paired as the program pairs them, ready to be asked. */
 export function simulateStation(options: { seed: number; scenario: Scenario; nights: number }): {
   spots: number;
   truth: Truth;
   ask(question: SimulatedQuestion): SimulatedAnswer;
+  rank(bandMetres: BandMetres, sectors?: number[]): SimulatedLadder;
 } {
   const { seed, scenario, nights } = options;
   const simulator = createSimulator({ seed, scenario });
@@ -140,6 +152,39 @@ export function simulateStation(options: { seed: number; scenario: Scenario; nig
         naive: plainMean(selected.differenceDb),
       };
     },
+    rank(bandMetres, sectors = []) {
+      const everyPair = antennas.flatMap((_, low) =>
+        antennas.slice(low + 1).map((__, next) => unitsOf(low + 1, low + next + 2)),
+      );
+      const all = concatenated(everyPair);
+      const input: LadderInput = {
+        question: ladderQuestion.parse({ bandMetres, sectors }),
+        antennas: antennas.map((name) => ({ ...compared(name), inService: true })),
+        receivers: receivers.map((callSign, index) => ({
+          ...{ id: index + 1, callSign, label: callSign },
+          retired: false,
+        })),
+        rules: { ...STANDING_RULES, blockMinutes: 15 },
+        ...{ marginDb, sectorCount: 12, station: scenario.place, units: all, calls: facts },
+      };
+      const trueDb = new Map<string, number>();
+      const differenceDb = all.differenceDb.map((_, i) => {
+        if (all.band[i] !== bandMetres) return 0;
+        const [a, b, call] = [all.antennaA[i]!, all.antennaB[i]!, calls[all.call[i]!]!];
+        const key = `${a} ${b} ${call}`;
+        const known =
+          trueDb.get(key) ??
+          truth.trueDifferenceDb(antennas[a - 1]!, antennas[b - 1]!, bandMetres, {
+            calls: new Map([[call, 1]]),
+          });
+        trueDb.set(key, known);
+        return known;
+      });
+      return {
+        answer: answerLadder(input),
+        truth: answerLadder({ ...input, units: { ...all, differenceDb } }),
+      };
+    },
   };
 }
 
@@ -162,13 +207,7 @@ function byPair<T extends UnitColumns | HeardOnlyColumns>(nights: readonly T[]):
       while (to < length && night.antennaA[to] === low && night.antennaB[to] === high) to++;
       return { night, from, to };
     });
-    const names = Object.keys(nights[0]!) as (keyof T)[];
-    return Object.fromEntries(
-      names.map((name) => [
-        name,
-        joined(stretches.map((s) => columnOf(s.night, name).subarray(s.from, s.to))),
-      ]),
-    ) as unknown as T;
+    return concatenated(stretches.map(({ night, from, to }) => rowsOf(night, from, to)));
   };
   return (a, b) => {
     const [low, high] = [Math.min(a, b), Math.max(a, b)];
@@ -177,6 +216,18 @@ function byPair<T extends UnitColumns | HeardOnlyColumns>(nights: readonly T[]):
     known.set(key, columns);
     return columns;
   };
+}
+
+function rowsOf<T extends UnitColumns | HeardOnlyColumns>(columns: T, from: number, to: number): T {
+  const names = Object.keys(columns) as (keyof T)[];
+  const cut = names.map((name) => [name, columnOf(columns, name).subarray(from, to)]);
+  return Object.fromEntries(cut) as unknown as T;
+}
+
+function concatenated<T extends UnitColumns | HeardOnlyColumns>(parts: readonly T[]): T {
+  const names = Object.keys(parts[0]!) as (keyof T)[];
+  const whole = names.map((name) => [name, joined(parts.map((part) => columnOf(part, name)))]);
+  return Object.fromEntries(whole) as unknown as T;
 }
 
 function columnOf<T>(columns: T, name: keyof T): Int32Array {
