@@ -85,7 +85,7 @@ export const hodgesLehmannEntry: MethodEntry = {
       tables: [
         {
           caption: 'Pairwise means, dB',
-          head: ['', ...fourMeans.map((db) => formatNumber(db))],
+          head: ['dB', ...fourMeans.map((db) => formatNumber(db))],
           rows: averages.map((row, i) => [
             formatNumber(fourMeans[i]!),
             ...fourMeans.slice(0, i).map(() => ''),
@@ -261,7 +261,7 @@ export const oddsRatio: MethodEntry = {
         },
         {
           caption: 'The season',
-          head: ['', 'heard on B', 'missed on B'],
+          head: ['Station-nights', 'heard on B', 'missed on B'],
           rows: [
             ['heard on A', 'units', String(test.onlyA)],
             ['missed on A', String(test.onlyB), 'nobody knows'],
