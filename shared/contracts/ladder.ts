@@ -59,7 +59,7 @@ export const ladderAntenna = z.object({
   clusters: z.number().int(),
   nights: z.number().int(),
   stations: z.number().int(),
-  /** At least 8 clusters from at least 3 nights, a value and an interval; else draw it as thin evidence. */
+  /** At least 8 clusters from at least 3 nights, and an interval (or it is the reference); else draw it as thin evidence. */
   speaks: z.boolean(),
 });
 export type LadderAntenna = z.infer<typeof ladderAntenna>;
@@ -107,7 +107,7 @@ export type LadderPair = z.infer<typeof ladderPair>;
 
 /** Antennas whose differences the data can tell: one scale. Largest component first. */
 export const ladderComponent = z.object({
-  /** The antenna that values are given against; null: the plain mean of the component's antennas. */
+  /** The antenna that values are given against; null: the plain mean of the antennas that have a chanceBest, else of all. */
   referenceAntennaId: id.nullable(),
   /** Highest value first. */
   antennas: z.array(ladderAntenna),
@@ -140,7 +140,7 @@ export const ladderObstacle = z.object({
     'unlinked',
     /** Units exist, but the antennas were only ever on receivers that nothing else links. */
     'inseparable',
-    /** The antennas have no units on this band in this choice at all. */
+    /** Antennas in service that have no units on this band in this choice at all; those taken down are not listed. */
     'no units',
   ]),
   /** The antennas that stand apart. */
@@ -148,7 +148,7 @@ export const ladderObstacle = z.object({
   /** The receivers they are tangled with; empty unless inseparable. */
   receiverIds: z.array(id),
   sentence: z.string(),
-  /** In plain words, cheapest first; each was checked to remove this obstacle. Empty for 'no units' of antennas out of service. */
+  /** In plain words, cheapest first; each was worked out to remove this obstacle. Empty where an antenna is out of service. */
   cures: z.array(z.string()),
 });
 export type LadderObstacle = z.infer<typeof ladderObstacle>;

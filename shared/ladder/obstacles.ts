@@ -103,16 +103,16 @@ class ObstacleFinder {
         });
       }
     }
-    cures.push(this.alternate(x, y));
+    cures.push(this.alternate(x, [y]));
     return {
       kind: 'inseparable',
       antennaIds: group,
       receiverIds: receiversOf([...onX, ...onY]),
       sentence:
-        `${this.antenna(x)} and ${this.antenna(y)} cannot be separated from the receivers they were on${this.where}: ` +
+        `${this.antenna(x)} and ${this.antenna(y)} cannot be separated from their receivers${this.where}: ` +
         `heard together, ${this.antenna(x)} was only ever on ${this.list(onX)} and ${this.antenna(y)} only on ` +
         `${this.list(onY)}, and nothing else tells these receivers apart.`,
-      cures: this.checked(cures, x, y),
+      cures: this.checked(cures, x, [y]),
     };
   }
 
@@ -125,60 +125,64 @@ class ObstacleFinder {
       sentence:
         `No unit links ${enumerate(apart.map((id) => this.antenna(id)))} to ` +
         `${enumerate(main.map((id) => this.antenna(id)))}${this.where}: they were never heard at the same time.`,
-      cures: this.checked(this.meetings(x, y), x, y),
+      cures: this.checked(this.meetings(x, [y]), x, [y]),
     };
   }
 
   private withoutUnits(without: LadderAntennaFacts[], main: number[]): LadderObstacle {
     const ids = without.map(({ id }) => id);
     const x = main.length > 0 ? this.busiest(main) : ids[0]!;
-    const y = ids.find((id) => id !== x);
+    const others = ids.filter((id) => id !== x);
     const have = ids.length === 1 ? 'has' : 'have';
     return {
       kind: 'no units',
       antennaIds: ids,
       receiverIds: [],
       sentence: `${enumerate(without.map(({ name }) => name))} ${have} no units${this.where}.`,
-      cures: y === undefined ? [] : this.checked(this.meetings(x, y), x, y),
+      cures: others.length === 0 ? [] : this.checked(this.meetings(x, others), x, others),
     };
   }
 
-  /** Ways to hear two antennas that never met at the same time. */
-  private meetings(x: number, y: number): Cure[] {
+  /** Ways to hear an antenna at the same time as one, or each of several, that it never met. */
+  private meetings(x: number, others: readonly number[]): Cure[] {
     const pairs = this.inUse.flatMap((r, i) => this.inUse.slice(i + 1).map((s) => [r, s] as const));
-    const joins = ([r, s]: readonly [number, number]) => this.helps([meet(x, r, y, s)], x, y);
+    const joining = (r: number, s: number) => others.map((y) => meet(x, r, y, s));
     // Receivers that are known apart need no swap.
-    const known = pairs.find(joins);
+    const known = pairs.find(([r, s]) => this.helps(joining(r, s), x, others));
     const [r, s] = known ?? pairs[0] ?? [];
-    const cures = [this.alternate(x, y)];
+    const cures = [this.alternate(x, others)];
     if (r === undefined || s === undefined) return cures;
-    const put = `put ${this.antenna(x)} on ${this.receiver(r)} and ${this.antenna(y)} on ${this.receiver(s)} ${minutes}`;
-    return known
-      ? [{ words: put, contacts: [meet(x, r, y, s)] }, ...cures]
-      : [
-          { words: `${put}, swapping them half-way`, contacts: [meet(x, r, y, s), meet(x, s, y, r)] },
-          ...cures,
-        ];
+    const put = `put ${this.antenna(x)} on ${this.receiver(r)} and ${this.each(others)} on ${this.receiver(s)} ${minutes}`;
+    const swapped = {
+      words: `${put}, swapping them half-way`,
+      contacts: [...joining(r, s), ...joining(s, r)],
+    };
+    return [known ? { words: put, contacts: joining(r, s) } : swapped, ...cures];
   }
 
-  private alternate(x: number, y: number): Cure {
+  private alternate(x: number, others: readonly number[]): Cure {
     return {
-      words: `let one receiver alternate between ${this.antenna(x)} and ${this.antenna(y)}, a few minutes each`,
-      contacts: [{ antennaA: x, antennaB: y, receiverA: null, receiverB: null }],
+      words: `let one receiver alternate between ${this.antenna(x)} and ${this.each(others)}, a few minutes each`,
+      contacts: others.map((y) => ({ antennaA: x, antennaB: y, receiverA: null, receiverB: null })),
     };
+  }
+
+  private each(ids: readonly number[]): string {
+    const names = enumerate(ids.map((id) => this.antenna(id)));
+    return ids.length === 1 ? names : `in turn ${names}`;
   }
 
   /** Cures that work, as sentences. Nobody can listen on an antenna that is taken down. */
-  private checked(cures: Cure[], x: number, y: number): string[] {
-    if (!this.isInService(x) || !this.isInService(y)) return [];
+  private checked(cures: Cure[], x: number, others: readonly number[]): string[] {
+    if (![x, ...others].every(this.isInService)) return [];
     return cures
-      .filter(({ contacts }) => this.helps(contacts, x, y))
+      .filter(({ contacts }) => this.helps(contacts, x, others))
       .map(({ words }, i) => `${i === 0 ? words[0]!.toUpperCase() + words.slice(1) : `Or ${words}`}.`);
   }
 
-  private helps(more: LadderContact[], x: number, y: number): boolean {
+  private helps(more: LadderContact[], x: number, others: readonly number[]): boolean {
     return ladderGroups([...this.result.contacts, ...more]).antennas.some(
-      (group) => group.includes(x) && group.includes(y),
+      (group) => group.includes(x) && others.every((y) => group.includes(y)),
     );
   }
 
