@@ -122,17 +122,18 @@ export async function listDecisions(
   return rows.map((row) => presentDecision(row, headline));
 }
 
-/** The two antennas of a finding, as they were called; null when the station has no such finding. */
+/** What a finding is called and what a list shows of it; null when the station has no such finding. */
 export async function readHeadline(
   manager: EntityManager,
   stationId: number,
   findingId: number,
-): Promise<Headline | null> {
-  const rows: { headline: Headline }[] = await manager.query(
-    'SELECT headline FROM finding WHERE station_id = $1 AND id = $2',
+): Promise<(Headline & { title: string }) | null> {
+  const rows: { title: string; headline: Headline }[] = await manager.query(
+    'SELECT title, headline FROM finding WHERE station_id = $1 AND id = $2',
     [stationId, findingId],
   );
-  return rows[0]?.headline ?? null;
+  const row = rows[0];
+  return row ? { ...row.headline, title: row.title } : null;
 }
 
 export async function readPictures(

@@ -163,7 +163,7 @@ export function createFindingService(deps: Deps, ask: AskQuestion) {
           frozenBy: actor.userId,
           frozenByName: await around.personName(transaction, actor.userId),
         });
-        await audit(transaction, String(id), { title: body.title, digest: frozen.digest });
+        await audit(transaction, String(id), { name: body.title, digest: frozen.digest });
         return id;
       });
     },
@@ -243,7 +243,10 @@ export function createFindingService(deps: Deps, ask: AskQuestion) {
           decidedBy: actor.userId,
           decidedByName: await around.personName(transaction, actor.userId),
         });
-        await audit(transaction, String(findingId), { decision, about, lookAgainOn });
+        await audit(transaction, String(findingId), {
+          name: headline.title,
+          ...{ decision, about, lookAgainOn },
+        });
         return added;
       });
       const decisions = await read.listDecisions(manager, stationId, findingId, headline);

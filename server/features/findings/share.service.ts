@@ -17,13 +17,15 @@ export function createShareService(deps: Deps) {
   const { dataSource } = deps;
   const { manager } = dataSource;
 
-  async function refuseUnknown(stationId: number, findingId: number): Promise<void> {
-    if (!(await read.readHeadline(manager, stationId, findingId))) throw new NotFound('This finding');
+  async function titleOf(stationId: number, findingId: number): Promise<string> {
+    const headline = await read.readHeadline(manager, stationId, findingId);
+    if (!headline) throw new NotFound('This finding');
+    return headline.title;
   }
 
   return {
     async list(stationId: number, findingId: number) {
-      await refuseUnknown(stationId, findingId);
+      await titleOf(stationId, findingId);
       return read.listShares(manager, stationId, findingId);
     },
 
@@ -34,7 +36,7 @@ export function createShareService(deps: Deps) {
       actor: Actor,
       audit: Audit,
     ): Promise<z.input<typeof contract.createShare.reply>> {
-      await refuseUnknown(stationId, findingId);
+      const name = await titleOf(stationId, findingId);
       const token = makeSecret();
       const id = await inTransaction(dataSource, async (transaction) => {
         const added = await findingRepository.addShare(transaction, {
@@ -43,7 +45,7 @@ export function createShareService(deps: Deps) {
           createdBy: actor.userId,
           expiresAt: new Date(deps.now() + days * 86_400_000),
         });
-        await audit(transaction, String(findingId), { share: added, label, days });
+        await audit(transaction, String(findingId), { name, share: added, label, days });
         return added;
       });
       const [share] = await read.listShares(manager, stationId, findingId, id);
@@ -51,10 +53,11 @@ export function createShareService(deps: Deps) {
     },
 
     async withdraw(stationId: number, findingId: number, id: string, audit: Audit): Promise<void> {
+      const name = await titleOf(stationId, findingId);
       await inTransaction(dataSource, async (transaction) => {
         if (!(await findingRepository.withdrawShare(transaction, stationId, findingId, id)))
           throw new NotFound('This link');
-        await audit(transaction, String(findingId), { share: id });
+        await audit(transaction, String(findingId), { name, share: id });
       });
     },
 
