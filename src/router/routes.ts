@@ -17,7 +17,16 @@ declare module 'vue-router' {
 
 /** The pages of a station: route names, and the keys of the rail's icons. */
 export type StationPageName =
-  'tonight' | 'compare' | 'switching' | 'spots' | 'imports' | 'station' | 'members' | 'methods' | 'settings';
+  | 'tonight'
+  | 'compare'
+  | 'switching'
+  | 'spots'
+  | 'imports'
+  | 'station'
+  | 'reports'
+  | 'members'
+  | 'methods'
+  | 'settings';
 
 export interface StationPage {
   /** Route name, and its path below /s/:stationId/. */
@@ -63,6 +72,12 @@ export const stationPages: readonly StationPage[] = [
     word: 'Station',
     permission: 'station:read',
     view: () => import('../views/StationView.vue'),
+  },
+  {
+    name: 'reports',
+    word: 'Reports',
+    permission: 'finding:read',
+    view: () => import('../views/FindingsView.vue'),
   },
   {
     name: 'members',
@@ -116,6 +131,12 @@ export const routes: RouteRecordRaw[] = [
     meta: { title: 'Set up', isPublic: true },
   },
   {
+    path: '/f',
+    name: 'shared-finding',
+    component: () => import('../views/SharedFindingView.vue'),
+    meta: { title: 'Finding', isPublic: true },
+  },
+  {
     path: '/demo-mail',
     name: 'demo-mail',
     component: () => import('../views/DemoMailView.vue'),
@@ -138,6 +159,12 @@ export const routes: RouteRecordRaw[] = [
         name: 'trials',
         component: () => import('../views/TrialsView.vue'),
         meta: { title: 'Trials', permission: 'trial:read' },
+      },
+      {
+        path: String.raw`reports/:findingId(\d+)`,
+        name: 'finding',
+        component: () => import('../views/FindingView.vue'),
+        meta: { title: 'Finding', permission: 'finding:read', rail: 'reports' },
       },
       {
         path: String.raw`imports/:importId(\d+)`,

@@ -8,6 +8,7 @@ const screens = [
   ['tonight', 'contester'],
   ['compare', 'analyst'],
   ['trials', 'analyst'],
+  ['reports', 'analyst'],
   ['switching', 'operator'],
   ['spots', 'operator'],
   ['imports', 'operator'],
@@ -16,7 +17,7 @@ const screens = [
   ['methods', 'contester'],
   ['settings', 'manager'],
 ] as const;
-const publicScreens = ['/sign-in', '/password-reset', '/demo-mail', '/no-such-page'];
+const publicScreens = ['/sign-in', '/password-reset', '/demo-mail', '/f', '/no-such-page'];
 const looks = [
   { width: 1440, height: 900, scheme: 'dark' },
   { width: 1440, height: 900, scheme: 'light' },

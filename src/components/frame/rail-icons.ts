@@ -24,6 +24,8 @@ export const railIcons: Record<string, readonly string[]> = {
     'M3 20c.5-4 2.5-6 6-6s5.5 2 6 6',
     'M16 4.5a3.5 3.5 0 0 1 0 6.5M17.5 14.3c2 .8 3.2 2.7 3.5 5.7',
   ],
+  // A sheet with a seal under its lines.
+  reports: ['M6 3h12v18h-12z', 'M9 7h6M9 10.5h6', 'M14.5 15.5a2 2 0 1 1-.01 0z'],
   // The spread of many readings with its middle marked.
   methods: ['M3 19c5 0 5-13 9-13s4 13 9 13', 'M12 19v-8', 'M3 21h18'],
   settings: ['M4 7h9M17 7h3', 'M15 5v4', 'M4 17h3M11 17h9', 'M9 15v4'],
