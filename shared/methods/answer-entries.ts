@@ -17,7 +17,7 @@ export const estimate: MethodEntry = {
     'Both are one small least-squares fit. Each unit is the antenna difference, plus the offsets of the receivers on its two sides, plus what fading and luck add.',
     'The mean is taken of decibels, not of powers: a fade of 20 dB should not outweigh an evening.',
   ],
-  formula: ['d = \u03b8 + \u03c1(receiver on A) \u2212 \u03c1(receiver on B) + error; \u03b8 is the answer'],
+  formula: ['d = difference + offset(receiver on A) \u2212 offset(receiver on B) + error'],
   example: () => ({
     words:
       'Three stations in three nights; only one receiver pair was used, so that the fit is the plain mean.',
@@ -99,7 +99,8 @@ export const receiverOffsets: MethodEntry = {
     'Offsets are given against the receiver of the band with the lowest number. Alternating units need none, because one receiver stands on both sides.',
   ],
   formula: [
-    'd = \u03b8 + sum of \u03c1 \u00d7 z + error; z is +1 on A\u2019s side, \u22121 on B\u2019s side, 0 elsewhere',
+    'd = difference + sum of offset \u00d7 z + error',
+    'z: +1 for the receiver on A\u2019s side, \u22121 for the one on B\u2019s side, 0 for all others',
   ],
   example: () => {
     const [theta, rho] = fitSwap(swapUnits).coefficients;
@@ -301,9 +302,21 @@ export const verdictEntry: MethodEntry = {
   title: 'Margin and verdict',
   asks: 'So, which one?',
   text: [
-    'The margin is the smallest difference that matters to you, 1 dB unless changed. The verdict holds the interval against it; the first line that applies is the verdict:',
-    'Cannot be separated: nothing tells the antennas from their receivers. Not enough yet: fewer than 8 station-nights or 3 nights. Clearly better: the whole 95 % interval lies beyond the margin. Better: it lies beyond zero. No practical difference: the 90 % interval lies inside the margin. Not settled: anything else.',
+    'The margin is the smallest difference that matters to you, 1 dB unless changed. The verdict holds the interval against it; of the lines below, the first that applies is the verdict.',
+    'A difference can be shown and still be too small to matter: \u201cbetter\u201d says only that zero is ruled out. \u201cNot settled\u201d means that more than one of the other lines is still possible.',
   ],
+  rules: {
+    caption: 'The first that applies',
+    head: ['Verdict', 'When'],
+    rows: [
+      ['cannot be separated', 'nothing tells the antennas from their receivers'],
+      ['not enough yet', 'fewer than 8 station-nights, or than 3 nights'],
+      ['clearly better', 'the whole 95 % interval lies beyond the margin'],
+      ['better', 'the whole 95 % interval lies beyond zero'],
+      ['no practical difference', 'the 90 % interval lies inside the margin'],
+      ['not settled', 'anything else'],
+    ],
+  },
   example: () => {
     const rows = trials.map(({ name, estimate: db, se, df, nights }) => {
       const wide = tInterval(db, se, df, 0.95);

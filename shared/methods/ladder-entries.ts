@@ -72,7 +72,7 @@ export const ladderEntry: MethodEntry = {
     'Values are against the mean of the antennas on the same ladder, or against one that you choose; the mean is zero, and the differences are the same either way. Intervals come from station-nights, as everywhere.',
     'Receivers get a small ladder of their own.',
   ],
-  formula: ['d = \u03b8(A) \u2212 \u03b8(B) + \u03c1(receiver on A) \u2212 \u03c1(receiver on B) + error'],
+  formula: ['d = value(A) \u2212 value(B) + offset(receiver on A) \u2212 offset(receiver on B) + error'],
   example: () => {
     const result = ladderOf(meetings);
     return {

@@ -33,6 +33,8 @@ export interface MethodEntry {
   /** The question behind the number, as somebody at the radio would ask it. */
   asks: string;
   text: readonly string[];
+  /** Rules that read better as a table. */
+  rules?: ExampleTable;
   /** In plain notation. */
   formula?: readonly string[];
   example: () => WorkedExample;

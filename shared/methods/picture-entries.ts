@@ -19,7 +19,7 @@ export const mapCells: MethodEntry = {
     `A cell speaks only with at least ${CELL_MIN_CLUSTERS} station-nights from at least ${CELL_MIN_NIGHTS} nights; the others are hatched, whatever they seem to show. In the picture of the nights a cell is one night, and ${CELL_MIN_CLUSTERS} stations make it speak.`,
     'Units whose bearing is unsure are left out of the directions only.',
   ],
-  formula: ['d = \u03b8(cell) + receiver offsets + error'],
+  formula: ['d = difference(cell) + receiver offsets + error'],
   example: () => {
     const rows = cells.flatMap(({ values }, cell) => values.map((db) => ({ cell, db })));
     const fit = clusterRegression(

@@ -18,6 +18,7 @@ const wordsOf = (entry: MethodEntry) =>
       methodTerms[entry.id],
       ...entry.text,
       ...(entry.formula ?? []),
+      ...(entry.rules?.rows.flat() ?? []),
       ...entry.sources,
     ].join(' '),
   );

@@ -6,6 +6,16 @@ export interface StripAxis {
   ticksDb: number[];
 }
 
+/** Equal readings side by side, one above the other: each dot with its place above or below the line, in px. */
+export function stackDots(dots: readonly number[]): { db: number; offsetPx: number }[] {
+  const seen = new Map<number, number>();
+  return dots.map((db) => {
+    const earlier = seen.get(db) ?? 0;
+    seen.set(db, earlier + 1);
+    return { db, offsetPx: Math.ceil(earlier / 2) * 8 * (earlier % 2 === 0 ? 1 : -1) };
+  });
+}
+
 const steps = [0.5, 1, 2, 5, 10, 20];
 
 /** An axis in round steps that holds zero, the margin and everything that is drawn. */
