@@ -19,10 +19,11 @@ describe("Student's t distribution", () => {
         fc.double({ min: 0.5, max: 2000, noNaN: true }),
         (t, df) => {
           expect(tCdf(-t, df)).toBe(tUpper(t, df));
-          expect(tTwoSided(t, df)).toBe(2 * tUpper(t, df));
           expect(tTwoSided(-t, df)).toBe(tTwoSided(t, df));
           const q = tUpper(t, df);
+          // Next to the smallest number of all, halving and doubling lose a bit.
           if (q < 1e-280) return;
+          expect(tTwoSided(t, df)).toBe(2 * q);
           // Close to the centre the tail itself holds only so many digits of t.
           expect(Math.abs(tUpperQuantile(q, df) - t)).toBeLessThanOrEqual(1e-11 * t + 1e-14);
           expect(tQuantile(q, df)).toBe(-tUpperQuantile(q, df));
