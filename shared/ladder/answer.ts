@@ -1,7 +1,7 @@
 import { CELL_MIN_CLUSTERS, CELL_MIN_NIGHTS } from '../comparison/cells.ts';
-import { clusterKeys, halfWeightStations, thinEvidence } from '../comparison/fairness.ts';
+import { halfWeightStations, thinEvidence } from '../comparison/fairness.ts';
 import type { LadderAnswer, LadderAntenna, LadderComponent, LadderPair } from '../contracts/ladder.ts';
-import { clusterIds, ladder } from '../stats/index.ts';
+import { ladder } from '../stats/index.ts';
 import type { LadderEstimate, LadderPair as FittedPair, LadderResult as Fit } from '../stats/index.ts';
 import { measureBreadth } from './breadth.ts';
 import type { MeasuredBreadth } from './breadth.ts';
@@ -25,8 +25,8 @@ const disagreement = 0.05;
 export function answerLadder(input: LadderInput): LadderResult {
   const { question, rules, marginDb, sectorCount } = input;
   const { bandMetres, bands, units, leftOut } = selectLadderUnits(input);
-  const fit = units.n === 0 ? null : fitUnits(units, question.referenceAntennaId);
   const breadth = measureBreadth(units);
+  const fit = units.n === 0 ? null : fitUnits(units, breadth.clusters, question.referenceAntennaId);
   const components = fit ? fit.groups.map((ids, group) => componentOf(input, fit, breadth, ids, group)) : [];
   const counts = countsOf(units, fit, breadth);
   const where = whereText(bandMetres, question.sectors, sectorCount);
@@ -45,9 +45,8 @@ export function answerLadder(input: LadderInput): LadderResult {
   };
 }
 
-function fitUnits(units: LadderUnits, reference: number | null): Fit {
+function fitUnits(units: LadderUnits, clusters: Int32Array, reference: number | null): Fit {
   const { antennaA, antennaB, receiverA, receiverB, differenceDb: difference } = units;
-  const { ids: clusters } = clusterIds(clusterKeys(units));
   const rows = { antennaA, antennaB, receiverA, receiverB, difference, clusters };
   return ladder(rows, { reference: reference ?? undefined });
 }

@@ -12,6 +12,8 @@ export interface MeasuredBreadth {
   /** The antennas in either order. */
   ofPair: (a: number, b: number) => Breadth;
   unitsOfStation: number[];
+  /** A number for each unit's (call sign, night): what is not independent shares it. */
+  clusters: Int32Array;
 }
 
 /** Flags of the nights and stations of one pair. */
@@ -62,6 +64,8 @@ export function measureBreadth(units: LadderUnits): MeasuredBreadth {
     ofAntenna: (id) => breadthOf(every.filter(({ a, b }) => a === id || b === id)),
     ofPair: (a, b) => breadthOf([pairs.get(nameOf(a, b))].filter((own) => own !== undefined)),
     unitsOfStation,
+    // Millions of calls over a year fit; a map of texts would take longer than the fit itself.
+    clusters: stations.numbers.map((station, i) => station * nights.count + nights.numbers[i]!),
   };
 }
 

@@ -1,7 +1,8 @@
 /**
  * Times the ladder on seeded units, beside R's `lm` with `vcovCL` on the very same rows where Rscript
- * (with the package sandwich) is on the machine. R gets fewer rows as well, because a dense design matrix
- * of half a million rows asks for some gigabytes there.
+ * (with the package sandwich) is on the machine. R does the fit and its covariance only, we also the
+ * splitting of all pairs, for which R would need one more fit a pair, and the draws. The last ratio is the time that
+ * these fits would take there: one fit times (1 + pairs).
  * Run: npx tsx tests/bench/ladder.bench.ts
  */
 import { execFileSync, spawnSync } from 'node:child_process';
@@ -54,14 +55,26 @@ function season(units: number, nights: number, callsANight: number): LadderRows 
   return rows;
 }
 
-function time<T>(job: () => T, runs: number): { bestMs: number; medianMs: number; result: T } {
+interface Timing<T> {
+  bestMs: number;
+  medianMs: number;
+  /** Median of the processor's time: on a busy machine the wall clock also counts others. */
+  processorMs: number;
+  result: T;
+}
+
+function time<T>(job: () => T, runs: number): Timing<T> {
   let result = job();
+  const processorMs: number[] = [];
   const wallMs = Array.from({ length: runs }, () => {
     const start = performance.now();
+    const used = process.cpuUsage();
     result = job();
+    processorMs.push(process.cpuUsage(used).user / 1000);
     return performance.now() - start;
-  }).sort((a, b) => a - b);
-  return { bestMs: wallMs[0]!, medianMs: wallMs[runs >> 1]!, result };
+  });
+  const middle = (values: number[]) => values.sort((a, b) => a - b)[runs >> 1]!;
+  return { bestMs: Math.min(...wallMs), medianMs: middle(wallMs), processorMs: middle(processorMs), result };
 }
 
 function timeInR(rows: LadderRows): { seconds: number; largestDifference: number } | null {
@@ -85,9 +98,9 @@ function timeInR(rows: LadderRows): { seconds: number; largestDifference: number
       m <- lm(u$difference ~ 0 + x)
       v <- vcovCL(m, cluster = u$clusters, type = "HC1", cadjust = TRUE)
       took <- proc.time()[["elapsed"]] - start
-      cat(took, coef(m)[1] - coef(m)[2], sqrt(v[1, 1] + v[2, 2] - 2 * v[1, 2]))`;
+      cat(format(c(took, coef(m)[1] - coef(m)[2], sqrt(v[1, 1] + v[2, 2] - 2 * v[1, 2])), digits = 15))`;
     const printed = execFileSync('Rscript', ['-e', script], { encoding: 'utf8', maxBuffer: 1 << 20 });
-    const [seconds, estimate, se] = printed.trim().split(' ').map(Number);
+    const [seconds, estimate, se] = printed.trim().split(/\s+/).map(Number);
     const pair = ladder(rows).pairs.find(({ a, b }) => a === 1 && b === 2)!;
     return {
       seconds: seconds!,
@@ -100,12 +113,13 @@ function timeInR(rows: LadderRows): { seconds: number; largestDifference: number
 
 const shown = (value: number) => value.toFixed(0).padStart(7);
 function report(label: string, rows: LadderRows, withR: boolean): LadderResult {
-  const { bestMs, medianMs, result } = time(() => ladder(rows), 5);
-  let line = `${label.padEnd(54)} best ${shown(bestMs)} ms   median ${shown(medianMs)} ms`;
+  const { bestMs, medianMs, processorMs, result } = time(() => ladder(rows), 7);
+  let line = `${label.padEnd(54)} best ${shown(bestMs)} ms   median ${shown(medianMs)} ms   processor ${shown(processorMs)} ms`;
   const r = withR ? timeInR(rows) : null;
   if (r) {
     line +=
       `   R lm + vcovCL ${shown(1000 * r.seconds)} ms: ${((1000 * r.seconds) / medianMs).toFixed(0)} times as long` +
+      `, with a fit a pair ${((r.seconds * (1 + result.pairs.length) * 1000) / medianMs).toFixed(0)} times (extrapolated)` +
       ` (largest difference ${r.largestDifference.toExponential(1)} dB)`;
   }
   console.log(line);
