@@ -30,6 +30,31 @@ describe('the dB axis of a comparison', () => {
     expect(differenceScale(fixtureAnswer({ histogram, nights: silent })).limitDb).toBeLessThan(17);
   });
 
+  it('holds the censored estimate, and lets the intervals beside the estimate widen it by half at most', () => {
+    const quiet = { sectors: [], bandHours: { basis: 'utc' as const, cells: [] }, nights: [] };
+    const given = { ...quiet, histogram: { binWidthDb: 1, bins: bins(-4, 4, 100) }, peekProof: null };
+    const censored = (estimateDb: number, halfWidthDb: number) => ({
+      ...fixtureAnswer().censored!,
+      estimateDb,
+      intervalDb: [estimateDb - halfWidthDb, estimateDb + halfWidthDb] as [number, number],
+    });
+    const limit = (more: Partial<Parameters<typeof fixtureAnswer>[0]>) =>
+      differenceScale(fixtureAnswer({ ...given, ...more })).limitDb;
+    expect(limit({ censored: null })).toBe(4);
+    expect(limit({ censored: censored(9, 1) })).toBeGreaterThanOrEqual(10);
+    expect(limit({ censored: censored(3, 2) })).toBeGreaterThanOrEqual(5);
+    expect(limit({ censored: censored(3, 40) })).toBe(6);
+  });
+
+  it('does not care how wild the peek-proof interval of an early night was', () => {
+    const { peekProof, ...rest } = fixtureAnswer();
+    const wild = { ...peekProof!.points[2]!, intervalDb: [-400, 400] as [number, number] };
+    const points = [wild, ...peekProof!.points.slice(3)];
+    expect(differenceScale({ ...rest, peekProof: { ...peekProof!, points } })).toEqual(
+      differenceScale({ ...rest, peekProof }),
+    );
+  });
+
   it('has ticks in equal steps, the same on both sides of zero', () => {
     const ticks = scaleTicks({ limitDb: 12, stepDb: 3, fullColourDb: 6 });
     expect(ticks).toEqual([-12, -9, -6, -3, 0, 3, 6, 9, 12]);

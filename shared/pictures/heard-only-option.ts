@@ -41,11 +41,15 @@ export function doublings(ratio: number | null): number {
   return ratio === null ? Infinity : ratio <= 0 ? -Infinity : Math.log2(ratio);
 }
 
-/** Doublings shown either way: all estimates that have a place, from 4 times to 64 times. */
+/** Doublings shown either way: all estimates that have a place up to 64 times, and ends of intervals up to 8. */
 export function ratioLimit(rows: readonly HeardOnlyRow[]): { limit: number; step: number } {
-  const places = rows.map(({ oddsRatio }) => Math.abs(doublings(oddsRatio))).filter(Number.isFinite);
-  const limit = Math.min(6, Math.max(2, ...places.map((place) => Math.ceil(place + 0.25))));
-  return limit > 3 ? { limit: 2 * Math.ceil(limit / 2), step: 2 } : { limit, step: 1 };
+  const reach = (ratio: number | null) => Math.abs(doublings(ratio));
+  const ends = rows.flatMap(({ intervalRatio }) =>
+    (intervalRatio ?? []).map((end) => Math.min(3, reach(end))),
+  );
+  const places = rows.map(({ oddsRatio }) => reach(oddsRatio)).filter(Number.isFinite);
+  const limit = Math.min(6, Math.max(2, ...ends, ...places.map((place) => place + 0.25)));
+  return limit > 3 ? { limit: 2 * Math.ceil(limit / 2), step: 2 } : { limit: Math.ceil(limit), step: 1 };
 }
 
 /** "8" and "1/8". */
@@ -59,7 +63,9 @@ export function heardOnlyPicture(context: PictureContext): Picture {
   const rows = heardOnlyRows(answer);
   const { limit, step } = ratioLimit(rows);
   const widthDeg = 360 / answer.sectorCount;
-  const box = { left: compact ? 128 : 168, right: 26, top: 44, bottom: 30 };
+  // On a phone the two names stand over the column of counts too: they need the whole width.
+  const box = { left: compact ? 118 : 168, right: 26, top: compact ? 60 : 44, bottom: 30 };
+  const sides = compact ? { x: 2, y: box.top - 26 } : { x: box.left, y: box.top - 6 };
   const countsX = box.left - 14;
   const rowPx = rows.length > 20 ? 18 : 22;
   const cells = rows.map((row) =>
@@ -112,7 +118,7 @@ export function heardOnlyPicture(context: PictureContext): Picture {
               (value) => api.coord([value, 0])[0]!,
               y,
               {
-                colour: place >= 0 ? tokens['diff-a'] : tokens['diff-b'],
+                colour: place > 0 ? tokens['diff-a'] : place < 0 ? tokens['diff-b'] : tokens.muted,
                 ink: tokens.text,
                 surface: tokens.surface,
                 radius: row.sector === null ? 6 : 4.5,
@@ -133,15 +139,15 @@ export function heardOnlyPicture(context: PictureContext): Picture {
     const side = (words: string, x: number, align: 'left' | 'right', fill: string) => ({
       type: 'text' as const,
       style: {
-        ...{ text: words, x, y: top - 6, align, fill, verticalAlign: 'bottom' as const },
-        ...{ font: font(600), width: (right - box.left) / 2 - 10, overflow: 'truncate' as const },
+        ...{ text: words, x, y: sides.y, align, fill, verticalAlign: 'bottom' as const },
+        ...{ font: font(600), width: (right - sides.x) / 2 - 10, overflow: 'truncate' as const },
       },
     });
     return {
       type: 'group',
       children: [
         verticalLine(api.coord([0, 0])[0]!, top, height, { stroke: tokens.text, lineWidth: 1.25 }),
-        side(`\u2190 ${b.name}${more}`, box.left, 'left', tokens['diff-b']),
+        side(`\u2190 ${b.name}${more}`, sides.x, 'left', tokens['diff-b']),
         side(`${a.name}${more} \u2192`, right, 'right', tokens['diff-a']),
         {
           type: 'text' as const,
@@ -170,15 +176,6 @@ export function heardOnlyPicture(context: PictureContext): Picture {
           min: -limit,
           max: limit,
           interval: step,
-          name: 'times',
-          nameLocation: 'end',
-          nameGap: 2,
-          nameTextStyle: {
-            color: tokens.muted,
-            fontSize: tokens.smallPx,
-            verticalAlign: 'bottom',
-            padding: [0, 0, 4, 0],
-          },
           axisLine: { show: true, onZero: false, lineStyle: { color: tokens.edge } },
           axisTick: { show: true, lineStyle: { color: tokens.edge } },
           axisLabel: { color: tokens.muted, fontSize: tokens.smallPx, formatter: ratioText },

@@ -1,44 +1,18 @@
-import { CustomChart } from 'echarts/charts';
-import { GridComponent } from 'echarts/components';
-import { init, use } from 'echarts/core';
-import { SVGRenderer } from 'echarts/renderers';
 import { describe, expect, it } from 'vitest';
 import type { ComparisonAnswer } from '../contracts/comparison.ts';
 import { differenceColour } from './chart-tokens.ts';
 import { cell, fixtureAnswer, fixtureTokens } from './answer.fixture.ts';
 import { bandHourPicture, hourOrder } from './band-hour-option.ts';
-import { differenceScale } from './difference-scale.ts';
+import { contextOf, drawn, has, hatches, texts } from './drawn.fixture.ts';
 import { forestPicture } from './forest-option.ts';
 import { barTitle, histogramBars, histogramPicture } from './histogram-option.ts';
 import { cutInterval } from './interval-mark.ts';
 import { inkOn } from './picture.ts';
-import type { Picture, PictureContext } from './picture.ts';
 import { rosePicture } from './rose-option.ts';
-
-use([CustomChart, GridComponent, SVGRenderer]);
-
-function contextOf(answer: ComparisonAnswer, more: Partial<PictureContext> = {}): PictureContext {
-  const scale = differenceScale(answer);
-  return { answer, scale, tokens: fixtureTokens, lit: null, compact: false, ...more };
-}
-
-/** The picture as ECharts really draws it. */
-function drawn(picture: Picture, width = 600): string {
-  const chart = init(null, null, { renderer: 'svg', ssr: true, width, height: picture.heightPx });
-  chart.setOption(picture.option);
-  const svg = chart.renderToSVGString();
-  chart.dispose();
-  return svg;
-}
-
-const texts = (svg: string) => [...svg.matchAll(/<text[^>]*>([^<]*)<\/text>/g)].map((match) => match[1]!);
-/** Fills that ECharts wrote, as rgb triples. */
-const has = (svg: string, colour: string) => svg.includes(colour) || svg.includes(colour.replaceAll(' ', ''));
-const hatches = (svg: string) => [...svg.matchAll(/fill="url\(#[^"]*\)"/g)].length;
 
 const pictures = { histogramPicture, rosePicture, bandHourPicture, forestPicture };
 
-describe('the dB axis of the four pictures', () => {
+describe('the dB axis of the pictures', () => {
   it.each(Object.entries(pictures))('is symmetric and the same in %s', (_name, build) => {
     const context = contextOf(fixtureAnswer());
     const axes = [build(context).option.xAxis].flat().filter((axis) => axis?.type === 'value');

@@ -1,5 +1,5 @@
 import type { ComparisonAnswer, ComparisonCell } from '../contracts/comparison.ts';
-import { formatDb, formatNumber, formatShare } from '../format.ts';
+import { formatDb, formatDbInterval, formatNumber, formatShare } from '../format.ts';
 import type { Picture, PictureCell } from './picture.ts';
 import { pText } from './fairness-words.ts';
 
@@ -45,6 +45,6 @@ export function poolingNumbers(pooling: NonNullable<ComparisonAnswer['pooling'][
   return (
     `Random effects over ${cells} cells: tau ${formatNumber(tauDb, 2)}\u2009dB (Paule-Mandel); Q ${formatNumber(q)} ` +
     `on ${df} degrees of freedom, p ${pText(p)}; I\u00b2 ${formatShare(iSquared)}. Mean of the cells ` +
-    `${formatDb(meanDb)}, 95\u2009% interval ${formatDb(intervalDb[0])} to ${formatDb(intervalDb[1])}.`
+    `${formatDb(meanDb)}, 95\u2009% interval ${formatDbInterval(intervalDb)}.`
   );
 }

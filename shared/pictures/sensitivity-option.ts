@@ -13,9 +13,9 @@ export const groupWords: Readonly<Record<SensitivityVariant['group'], string>> =
   'as asked': 'The question',
   'block length': 'Block length',
   'matching window': 'Matching window',
-  guard: 'Guard after a switch',
-  zeros: 'Zeros in the ranking',
-  clustering: 'What is independent',
+  guard: 'Guard',
+  zeros: 'Zeros in ranking',
+  clustering: 'Independence',
   stations: 'Which stations',
   weights: 'Weights',
 };
@@ -51,11 +51,12 @@ export function sensitivityPicture(
   const rows = inGroups(variants);
   const base = rows.find(({ group }) => group === 'as asked') ?? null;
   const rowPx = compact ? 42 : 24;
-  const box = { left: compact ? 24 : 410, right: 26, top: 44, bottom: 30 };
+  const box = { left: compact ? 24 : 364, right: compact ? 26 : 92, top: 44, bottom: 30 };
   /** On a phone the name stands over its row. */
   const markBelowPx = compact ? 9 : 0;
-  const namesX = 160;
+  const namesX = 126;
 
+  const bold = (more: object) => ({ ...more, font: `600 ${tokens.smallPx}px ${tokens.font}` });
   const marks: CustomSeriesOption = {
     id: 'cells',
     type: 'custom',
@@ -96,7 +97,9 @@ export function sensitivityPicture(
         });
       }
       if (compact) {
-        children.push(text(row.label, 2, middle - 9, { width: right - 4 }));
+        children.push(
+          text(row.label, 2, middle - 9, { width: right - 60, stroke: tokens.surface, lineWidth: 3 }),
+        );
       } else {
         if (first)
           children.push(text(groupWords[row.group], 2, middle, { fill: tokens.muted, width: namesX - 12 }));
@@ -104,7 +107,7 @@ export function sensitivityPicture(
       }
       if (empty !== null) {
         children.push(
-          text(empty, compact ? right : box.left + 8, y, {
+          text(empty, compact ? api.getWidth() - 2 : box.left + 8, compact ? middle - 9 : y, {
             ...{ fill: tokens.muted, align: compact ? 'right' : 'left' },
             ...{ stroke: tokens.surface, lineWidth: 4 },
           }),
@@ -112,6 +115,10 @@ export function sensitivityPicture(
       } else {
         const isBase = row === base;
         const estimateDb = row.estimateDb!;
+        const end = { fill: tokens.text, align: 'right' };
+        children.push(
+          text(formatDb(estimateDb), api.getWidth() - 2, compact ? middle - 9 : y, isBase ? bold(end) : end),
+        );
         children.push(
           ...intervalMark(
             { value: estimateDb, interval: row.intervalDb, limit: scale.limitDb },
@@ -122,7 +129,8 @@ export function sensitivityPicture(
               ink: tokens.text,
               surface: tokens.surface,
               radius: isBase ? 6 : 4.5,
-              hollow: row.verdict === 'not enough yet',
+              // The rank rows have no verdict of their own: they rest on the same units as the question.
+              hollow: (row.verdict ?? base?.verdict) === 'not enough yet',
             },
           ),
         );

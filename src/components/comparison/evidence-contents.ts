@@ -11,7 +11,7 @@ export interface EvidencePart {
 
 /** The parts of the evidence in reading order, each with its shortest answer. */
 export function evidenceParts(answer: ComparisonAnswer): EvidencePart[] {
-  const { fairness, peekProof, counts } = answer;
+  const { fairness, counts } = answer;
   const cells = [...answer.sectors, ...answer.bandHours.cells];
   const speaking = cells.filter(({ speaks }) => speaks).length;
   return [
@@ -25,15 +25,17 @@ export function evidenceParts(answer: ComparisonAnswer): EvidencePart[] {
       title: 'Is it fair?',
       says: fairness.warnings.length === 0 ? 'nothing to note' : countOf(fairness.warnings.length, 'note'),
     },
-    { id: 'stop', title: 'May I stop?', says: stopWords(peekProof) },
+    { id: 'stop', title: 'May I stop?', says: stopWords(answer) },
     { id: 'choices', title: 'Would other choices say the same?', says: 'on request' },
     { id: 'stations', title: 'Station by station', says: countOf(counts.stations, 'station') },
   ];
 }
 
-function stopWords(peekProof: ComparisonAnswer['peekProof']): string {
+function stopWords({ peekProof, marginDb }: ComparisonAnswer): string {
   const interval = peekProof?.points.at(-1)?.intervalDb;
   if (!interval) return 'too early to say';
+  if (Math.max(Math.abs(interval[0]), Math.abs(interval[1])) < marginDb)
+    return 'yes: no practical difference';
   return interval[0] > 0 || interval[1] < 0
     ? `yes: ${formatDbInterval(interval)}`
     : 'not yet: zero is still in';

@@ -283,6 +283,16 @@ describe('the second line', () => {
     expect(wrapper.emitted('change')).toBeUndefined();
   });
 
+  it('asks with stations and nights both taken as independent', async () => {
+    const wrapper = mountRefinements(true);
+    const choice = wrapper
+      .findAll('select')
+      .find((each) => each.findAll('option').some((option) => option.element.value === 'two-way'))!;
+    await choice.setValue('two-way');
+    await wrapper.find('form').trigger('submit');
+    expect(wrapper.emitted('change')).toEqual([[{ ...draft, clustering: 'two-way' }]]);
+  });
+
   it('keeps other rules from whoever may not have units made', () => {
     const radios = mountRefinements(false).findAll<HTMLInputElement>('input[type="radio"]');
     expect(radios[1]!.element.disabled).toBe(true);
