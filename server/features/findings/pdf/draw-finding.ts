@@ -4,7 +4,7 @@ import { formatCount, formatUtc, formatUtcDay } from '../../../../shared/format.
 import type { FrozenPictures } from '../pictures.ts';
 import * as facts from './facts.ts';
 import type { PrintedFinding } from './facts.ts';
-import { ink, Sheet } from './sheet.ts';
+import { headingHeight, ink, Sheet } from './sheet.ts';
 import { columnsHeight, drawColumns, drawFacts } from './tables.ts';
 import type { Column } from './tables.ts';
 import { drawVerdictScale } from './verdict-scale.ts';
@@ -27,8 +27,16 @@ export async function drawFinding({ finding, pictures, paper }: PdfInput): Promi
   drawHead(sheet, finding);
   drawVerdict(sheet, finding);
   drawDecisions(sheet, finding);
-  drawPictures(sheet, pictures);
+  drawPair(sheet, pictures);
+  drawWide(sheet, 'When', pictures['band-hour'].sheets, captions['band-hour']);
+  const steady = () => drawWide(sheet, 'How steady', pictures.forest.sheets, captions.forest);
+  // A tall picture by night would leave half a page empty: where the checks fill it, the picture follows them.
+  const picture = wideLayout(sheet, pictures.forest.sheets[0]!, captions.forest).whole;
+  const checksFirst = picture > sheet.room && fairnessHeight(sheet, finding) <= sheet.room;
+  if (!checksFirst) steady();
   drawFairness(sheet, finding);
+  if (checksFirst) steady();
+  drawOtherViews(sheet, finding);
   drawOffsets(sheet, finding);
   drawRecord(sheet, finding);
   drawHowToRead(sheet, finding);
@@ -119,15 +127,16 @@ const captions = {
     'One line a night with its 95\u2009% interval; larger dots carry more units. Hollow and dashed: fewer than 8 stations.',
 };
 const captionStyle = { size: 8.5, colour: ink.muted };
+const titleHeight = 20;
+const wideGap = 14;
 
-function drawPictures(sheet: Sheet, pictures: FrozenPictures): void {
+function drawPair(sheet: Sheet, pictures: FrozenPictures): void {
   const gap = 14;
   const half = (sheet.width - gap) / 2;
   const pair = [
     { title: 'The differences', name: 'histogram', x: sheet.left },
     { title: 'Where', name: 'rose', x: sheet.left + half + gap },
   ] as const;
-  const titleHeight = 20;
   const heights = pair.map(({ name }) => sheet.pictureHeight(pictures[name].whole, half));
   const captionHeights = pair.map(({ name }) => sheet.heightOf(captions[name], half, captionStyle));
   const whole = titleHeight + Math.max(...heights) + 4 + Math.max(...captionHeights);
@@ -143,22 +152,24 @@ function drawPictures(sheet: Sheet, pictures: FrozenPictures): void {
     sheet.write(captions[name], { x, y: below, width: half, ...captionStyle });
   }
   sheet.y = top + whole;
-  drawWide(sheet, 'When', pictures['band-hour'].sheets, captions['band-hour']);
-  drawWide(sheet, 'How steady', pictures.forest.sheets, captions.forest);
+}
+
+/** How large a picture over both columns is drawn, and what it takes with heading and caption, in points. */
+function wideLayout(sheet: Sheet, svg: string, caption: string) {
+  const around = wideGap + titleHeight + 4 + sheet.heightOf(caption, sheet.width, captionStyle);
+  // A picture that is taller than a page is drawn smaller, never cut.
+  const most = sheet.pageRoom - around;
+  const width = Math.min(sheet.width, (sheet.width * most) / sheet.pictureHeight(svg, sheet.width));
+  const height = sheet.pictureHeight(svg, width);
+  return { width, height, whole: around + height };
 }
 
 /** A picture over both columns; heading, first sheet and caption stay together. */
 function drawWide(sheet: Sheet, title: string, sheets: readonly string[], caption: string): void {
-  const captionHeight = sheet.heightOf(caption, sheet.width, captionStyle);
-  const titleHeight = 20;
   sheets.forEach((svg, index) => {
-    const spare = titleHeight + 4 + captionHeight;
-    // A picture that is taller than a page is drawn smaller, never cut.
-    const most = sheet.pageRoom - spare;
-    const width = Math.min(sheet.width, (sheet.width * most) / sheet.pictureHeight(svg, sheet.width));
-    const height = sheet.pictureHeight(svg, width);
-    sheet.space(14);
-    sheet.keep(spare + height);
+    const { width, height, whole } = wideLayout(sheet, svg, caption);
+    if (whole > sheet.room) sheet.keep(sheet.pageRoom);
+    sheet.space(wideGap);
     const heading = sheets.length === 1 ? title : `${title} (${index + 1} of ${sheets.length})`;
     sheet.write(heading, { x: sheet.left, y: sheet.y, width: sheet.width, size: 12, weight: 600 });
     sheet.y += titleHeight;
@@ -168,16 +179,33 @@ function drawWide(sheet: Sheet, title: string, sheets: readonly string[], captio
   });
 }
 
-function drawFairness(sheet: Sheet, finding: PrintedFinding): void {
+function fairnessColumns(finding: PrintedFinding): [Column, Column] {
   const answer = facts.answerOf(finding);
-  const columns: [Column, Column] = [
+  return [
     { title: 'Left out', facts: facts.leftOutFacts(answer) },
     { title: 'What carries it', facts: facts.evidenceFacts(answer) },
   ];
+}
+const sentenceStyle = { size: 9.5, after: 3 };
+
+function fairnessHeight(sheet: Sheet, finding: PrintedFinding): number {
+  const sentences = facts.fairnessSentences(facts.answerOf(finding));
+  return sentences.reduce(
+    (sum, sentence) => sum + sheet.heightOf(sentence, sheet.width, sentenceStyle) + sentenceStyle.after,
+    headingHeight + columnsHeight(sheet, fairnessColumns(finding)) + 8,
+  );
+}
+
+function drawFairness(sheet: Sheet, finding: PrintedFinding): void {
+  const columns = fairnessColumns(finding);
   sheet.heading('Is it fair', columnsHeight(sheet, columns));
   drawColumns(sheet, columns);
-  for (const sentence of facts.fairnessSentences(answer)) sheet.paragraph(sentence, { size: 9.5, after: 3 });
-  const others = facts.otherViewFacts(answer);
+  for (const sentence of facts.fairnessSentences(facts.answerOf(finding)))
+    sheet.paragraph(sentence, sentenceStyle);
+}
+
+function drawOtherViews(sheet: Sheet, finding: PrintedFinding): void {
+  const others = facts.otherViewFacts(facts.answerOf(finding));
   if (others.length === 0) return;
   sheet.heading('The same, seen otherwise', 40);
   drawFacts(sheet, others, 0.5);

@@ -18,6 +18,9 @@ export const ink = {
 /** Margins in points; the footer stands inside the lower one. */
 const margin = { side: 48, top: 46, bottom: 58 };
 const leading = 1.32;
+const headingSize = 13;
+/** What a heading takes with the space above and below it. */
+export const headingHeight = 12 + headingSize * leading + 4;
 
 export interface TextStyle {
   size?: number;
@@ -139,9 +142,15 @@ export class Sheet {
   /** A heading that stays with at least `keepWith` points of what follows; it also stands in the outline. */
   heading(text: string, keepWith: number): void {
     this.space(12);
-    this.keep(13 * leading + 6 + keepWith);
+    this.keep(headingSize * leading + 4 + keepWith);
     this.doc.outline.addItem(text);
-    this.y += this.write(text, { x: this.left, y: this.y, width: this.width, size: 13, weight: 600 });
+    this.y += this.write(text, {
+      x: this.left,
+      y: this.y,
+      width: this.width,
+      size: headingSize,
+      weight: 600,
+    });
     this.y += 4;
   }
 
