@@ -140,8 +140,8 @@ export function fixtureLadder(given: Partial<LadderAnswer> = {}): LadderAnswer {
         sentence:
           'No unit links West wire and Low dipole to North-east wire, Vertical, South loop and Old loop on 160\u2009m: they were never heard at the same time.',
         cures: [
-          'put Vertical on Left and West wire on Right for about 40 minutes',
-          'switch Left between Vertical and West wire every few minutes for one evening',
+          'Put Vertical on EI7QSB-1 and West wire on EI7QSB-2 for about 40 minutes.',
+          'Or let one receiver alternate between Vertical and West wire, a few minutes each.',
         ],
       },
       {
@@ -149,7 +149,7 @@ export function fixtureLadder(given: Partial<LadderAnswer> = {}): LadderAnswer {
         antennaIds: [7],
         receiverIds: [],
         sentence: 'Test loop has no units on 160\u2009m.',
-        cures: ['put Vertical on Left and Test loop on Right for about 40 minutes'],
+        cures: ['Put Vertical on EI7QSB-1 and Test loop on EI7QSB-2 for about 40 minutes.'],
       },
     ],
     counts: {

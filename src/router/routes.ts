@@ -19,6 +19,7 @@ declare module 'vue-router' {
 export type StationPageName =
   | 'tonight'
   | 'compare'
+  | 'ladder'
   | 'switching'
   | 'spots'
   | 'imports'
@@ -35,6 +36,8 @@ export interface StationPage {
   word: string;
   permission: Permission;
   view: () => Promise<Component>;
+  /** Never in a phone's bottom bar: it would push out what is needed at the switch. */
+  isBehindMore?: boolean;
 }
 
 /**
@@ -53,6 +56,13 @@ export const stationPages: readonly StationPage[] = [
     word: 'Compare',
     permission: 'comparison:read',
     view: () => import('../views/CompareView.vue'),
+  },
+  {
+    name: 'ladder',
+    word: 'Ladder',
+    permission: 'comparison:read',
+    view: () => import('../views/LadderView.vue'),
+    isBehindMore: true,
   },
   {
     name: 'switching',

@@ -7,6 +7,7 @@ import type { Site } from '../helpers/site.ts';
 const screens = [
   ['tonight', 'contester'],
   ['compare', 'analyst'],
+  ['ladder', 'analyst'],
   ['trials', 'analyst'],
   ['reports', 'analyst'],
   ['switching', 'operator'],

@@ -4,6 +4,8 @@ export const railIcons: Record<string, readonly string[]> = {
   tonight: ['M12 3a9 9 0 1 1-.01 0z', 'M12 12l3.6-7.8M12 12l7.8-3.6', 'M12 12v.01'],
   // Two levels on one scale.
   compare: ['M3 20h18', 'M8 20v-9', 'M16 20V5', 'M5.5 11h5M13.5 5h5'],
+  // Three rungs, each with the place of its antenna.
+  ladder: ['M4 6h16M4 12h16M4 18h16', 'M16 4v4M11 10v4M7 16v4'],
   // One line thrown from the upper to the lower contact.
   switching: ['M3 12h5', 'M8 12l8-6', 'M16 6h5', 'M16 18h5', 'M8 12v.01'],
   // Dots of different strength around the station.
