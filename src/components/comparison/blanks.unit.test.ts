@@ -12,7 +12,7 @@ import {
   pictureSummary,
 } from '../../../shared/pictures/cell-words.ts';
 import { pointAt, sectorAt, sectorsBetween } from './compass.ts';
-import { halfWeightWords, heardOnlyWords, pText } from './fairness-words.ts';
+import { halfWeightWords, heardOnlyWords, pText } from '../../../shared/pictures/fairness-words.ts';
 import { blanksOf, narrowQuestion } from './narrow-question.ts';
 import { markAt, nightStrip, placeOfMark } from './night-strip.ts';
 

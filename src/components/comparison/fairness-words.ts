@@ -1,1 +1,0 @@
-export { halfWeightWords, heardOnlyWords, pText } from '../../../shared/pictures/fairness-words.ts';
