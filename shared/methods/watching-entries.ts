@@ -144,7 +144,7 @@ export const detectable: MethodEntry = {
   title: 'Detectable difference',
   asks: 'If there had been a difference, would we have seen it?',
   text: [
-    'The smallest true difference that a trial with this spread and this many station-nights finds in 80 of 100 cases. When an answer is not settled, it says what can be ruled out of the reasons: a larger difference would most likely have shown.',
+    'The smallest true difference that a trial with this spread and this many station-nights finds in 80 of 100 cases. When an answer is not settled, it says how large a difference would most likely have shown by now.',
     'Found means that the 95 % interval leaves zero out on the right side.',
   ],
   formula: [
