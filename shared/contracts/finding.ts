@@ -61,7 +61,10 @@ export const finding = findingSummary.extend({
     rules: pairingRules,
     marginDb: z.number(),
   }),
-  /** The answer of that day, with all its numbers. Its antennas and nights are those of the question. */
+  /**
+   * The answer of that day, with all its numbers. One frozen by an earlier release lacks what has been added
+   * to answers since: whoever adds a field there says here what such an answer shows instead.
+   */
   answer: comparisonAnswer,
   /** A night that was still going on when the finding was frozen and is therefore not part of it. */
   leftOutNight: day.nullable(),

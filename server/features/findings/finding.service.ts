@@ -68,6 +68,23 @@ export function createFindingService(deps: Deps, ask: AskQuestion) {
     return question;
   }
 
+  /**
+   * Sectors and receivers only choose among the units: a station that has fewer of them today must not refuse.
+   * Without one of its antennas there is nothing to ask.
+   */
+  async function askAgain(stationId: number, question: ComparisonQuestion, actor: Actor) {
+    try {
+      return await ask(stationId, { ...question, sectors: [], receivers: [] }, actor);
+    } catch (error) {
+      if (!(error instanceof InvalidRequest)) throw error;
+      throw new Conflict(
+        'One of the two antennas has been removed from the station: today there is nothing to hold against the finding.',
+        [],
+        'antenna-removed',
+      );
+    }
+  }
+
   return {
     found,
 
@@ -177,12 +194,7 @@ export function createFindingService(deps: Deps, ask: AskQuestion) {
       const finding = await found(stationId, findingId);
       const packed = await read.readEvidence(manager, stationId, findingId);
       const { question } = finding;
-      // Sectors and receivers only choose among the units; a station that has fewer of them today must not refuse.
-      const ready = await ask(
-        stationId,
-        { ...(question as ComparisonQuestion), sectors: [], receivers: [] },
-        actor,
-      );
+      const ready = await askAgain(stationId, question as ComparisonQuestion, actor);
       if ('pending' in ready) return ready;
       const station = await readStation(manager, stationId);
       const since = new Date(finding.frozenAt);
