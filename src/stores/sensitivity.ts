@@ -27,6 +27,7 @@ export const useSensitivityStore = defineStore('sensitivity', () => {
   let asked: { stationId: number; question: ComparisonQuestion } | null = null;
   let current: AbortController | null = null;
   let timer: ReturnType<typeof setTimeout> | undefined;
+  let followedAtMs = 0;
 
   const waitingJobs = computed(() => [
     ...new Set(
@@ -70,7 +71,14 @@ export const useSensitivityStore = defineStore('sensitivity', () => {
       followSoon();
     } catch (error) {
       if (current !== mine || isAbort(error)) return;
-      problem.value = asProblem(error);
+      const why = asProblem(error);
+      // A night came in meanwhile and the units of the question itself are being made anew: that passes.
+      if (why.code === 'units-pending' && isWaiting.value) {
+        state.value = 'ready';
+        followSoon();
+        return;
+      }
+      problem.value = why;
       state.value = 'failed';
     }
   }
@@ -82,8 +90,9 @@ export const useSensitivityStore = defineStore('sensitivity', () => {
 
   /** Looks how far the jobs are; asks again when one of them has ended. Called by a timer and by live events. */
   async function follow(): Promise<void> {
-    if (asked === null || !isWaiting.value) return;
+    if (asked === null || !isWaiting.value || state.value !== 'ready') return;
     clearTimeout(timer);
+    followedAtMs = Date.now();
     const mine = current;
     const { stationId } = asked;
     try {
@@ -105,9 +114,12 @@ export const useSensitivityStore = defineStore('sensitivity', () => {
     }
   }
 
-  /** A live event about a job: it concerns this page when a row waits for that job. */
+  /**
+   * A live event about a job: it concerns this page when a row waits for that job. Every night that is made sends
+   * one; the timer catches up with those that come thick and fast.
+   */
   function onJob(jobId: number): void {
-    if (waitingJobs.value.includes(jobId)) void follow();
+    if (waitingJobs.value.includes(jobId) && Date.now() - followedAtMs > 1000) void follow();
   }
 
   /** No more asking. What is ready stays; the jobs go on without this page. */

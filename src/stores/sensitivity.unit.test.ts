@@ -62,12 +62,13 @@ describe('asking how the answer would be under other choices', () => {
     await store.ask(1, question, true);
     expect(store.state).toBe('ready');
     expect(store.isWaiting).toBe(true);
-    await store.follow();
+    store.onJob(41);
+    await vi.waitFor(() => expect(store.jobs.size).toBe(2));
     expect(store.jobs.get(41)?.progress).toEqual({ done: 4, total: 14, secondsLeft: 60 });
     expect(prepared).toEqual([true]);
     done = true;
-    store.onJob(42);
-    await vi.waitFor(() => expect(store.isWaiting).toBe(false));
+    await store.follow();
+    expect(store.isWaiting).toBe(false);
     expect(store.reply?.sentence).toBe('No choice moves it.');
     // Making them was asked for once; afterwards only what has become of them.
     expect(prepared).toEqual([true, false]);
@@ -82,6 +83,49 @@ describe('asking how the answer would be under other choices', () => {
     store.onJob(999);
     expect(server.seen).toHaveLength(before);
     store.stop();
+  });
+
+  it('looks once for the many events that a job sends while it runs', async () => {
+    const store = useSensitivityStore();
+    server.routes[path] = () => ({ body: fixtureSensitivity() });
+    for (const id of [41, 42]) {
+      server.routes[`GET /stations/1/jobs/${id}`] = () => ({ body: job(id, 'running') });
+    }
+    await store.ask(1, question, true);
+    for (let event = 0; event < 10; event += 1) store.onJob(41);
+    await vi.waitFor(() => expect(store.jobs.size).toBe(2));
+    expect(server.seen.filter((line) => line.endsWith('/jobs/41'))).toHaveLength(1);
+    store.stop();
+  });
+
+  it('goes on waiting while the units of the question itself are made anew', async () => {
+    const store = useSensitivityStore();
+    server.routes[path] = () => ({ body: fixtureSensitivity() });
+    for (const id of [41, 42]) {
+      server.routes[`GET /stations/1/jobs/${id}`] = () => ({ body: job(id, 'done') });
+    }
+    await store.ask(1, question, true);
+    server.routes[path] = () => ({ status: 409, code: 'units-pending', detail: 'They are being made.' });
+    await store.follow();
+    expect(store.state).toBe('ready');
+    expect(store.isWaiting).toBe(true);
+    server.routes[path] = () => ({ body: complete() });
+    await store.follow();
+    expect(store.reply?.sentence).toBe('No choice moves it.');
+    store.stop();
+  });
+
+  it('asks no more by itself once it has failed', async () => {
+    const store = useSensitivityStore();
+    server.routes[path] = () => ({ body: fixtureSensitivity() });
+    await store.ask(1, question, true);
+    server.routes[path] = () => ({ status: 403, detail: 'You may not.' });
+    await store.ask(1, question, false);
+    expect(store.state).toBe('failed');
+    const before = server.seen.length;
+    store.onJob(41);
+    await store.follow();
+    expect(server.seen).toHaveLength(before);
   });
 
   it('asks again when a job has failed, so that its row says that it is not made', async () => {
