@@ -104,7 +104,8 @@ export function runExperiment(
     peeks: once(() =>
       Array.from({ length: world.nights }, (_, night) => {
         const endMinute = nightEndMs(firstNight + night, place.longitude) / 60_000;
-        const units = where(input.units, (i) => input.units.blockMinute[i]! < endMinute);
+        const { blockMinute } = input.units;
+        const units = where(input.units, (i) => blockMinute[i]! < endMinute);
         return peekAt(fitComparison({ ...input, units }));
       }),
     ),
@@ -146,12 +147,13 @@ function inputOf(
 }
 
 function where<T extends UnitColumns | HeardOnlyColumns>(columns: T, wanted: (i: number) => boolean): T {
-  const rows = columns.call.map((_, i) => i).filter(wanted);
+  const rows: number[] = [];
+  for (let i = 0; i < columns.call.length; i++) if (wanted(i)) rows.push(i);
   const picked = Object.entries(columns).map(([name, values]) => {
     const column = values as Int32Array;
     const Kind = column.constructor as new (length: number) => Int32Array;
     const kept = new Kind(rows.length);
-    rows.forEach((row, k) => (kept[k] = column[row]!));
+    for (let k = 0; k < rows.length; k++) kept[k] = column[rows[k]!]!;
     return [name, kept];
   });
   return Object.fromEntries(picked) as T;
@@ -159,8 +161,10 @@ function where<T extends UnitColumns | HeardOnlyColumns>(columns: T, wanted: (i:
 
 function naiveOf(differenceDb: Float64Array): Naive {
   const n = differenceDb.length;
-  const estimateDb = differenceDb.reduce((sum, d) => sum + d, 0) / n;
-  const squares = differenceDb.reduce((sum, d) => sum + (d - estimateDb) ** 2, 0);
+  let estimateDb = 0;
+  for (const d of differenceDb) estimateDb += d / n;
+  let squares = 0;
+  for (const d of differenceDb) squares += (d - estimateDb) ** 2;
   const seDb = Math.sqrt(squares / (n - 1) / n);
   // Hundreds of units: the t distribution's quantiles are the normal ones.
   const within = (quantile: number): [number, number] => [
