@@ -101,6 +101,12 @@ describe('the words of a ladder', () => {
   it('name the reference, and say why an interval is missing', () => {
     const against = { ...main, referenceAntennaId: 2 };
     expect(zeroWords(against)).toBe('Vertical');
+    const carried = (ids: number[]) => ({
+      ...main,
+      antennas: main.antennas.map((each) => (ids.includes(each.id) ? { ...each, chanceBest: null } : each)),
+    });
+    expect(zeroWords(carried([4]))).toBe('the mean of the 3 antennas with enough evidence');
+    expect(zeroWords(carried([1, 2, 3, 4]))).toBe('the mean of these 4 antennas');
     expect(intervalWords(main.antennas[1]!, against)).toBe('the reference');
     expect(intervalWords({ ...main.antennas[0]!, intervalDb: null }, main)).toContain(
       'one station-night carries it',
@@ -131,6 +137,9 @@ describe('the words of a ladder', () => {
 
   it('hold direct against indirect evidence, and say where there is nothing to hold', () => {
     expect(consistencyWords(pair(2, 3)).state).toBe('agree');
+    expect(thin(consistencyWords({ ...pair(2, 3), consistencyP: 0.016 }).words)).toBe(
+      'Direct and indirect evidence differ no more than luck allows among so many pairs: +0.3 dB apart, p 0.016 before adjustment.',
+    );
     expect(thin(consistencyWords(pair(1, 3)).words)).toContain('disagree: +2.5 dB apart, p below 0.001');
     expect(consistencyWords(pair(1, 4)).words).toContain('never heard together');
     expect(consistencyWords(pair(3, 4)).words).toContain('lone bridge');
@@ -142,7 +151,7 @@ describe('the words of a ladder', () => {
       'Within the margin of 1.0 dB below North-east wire: Vertical.',
     );
     expect(apartWords(apart, [main])).toBe(
-      'A scale of its own: nothing links these antennas to North-east wire, Vertical, South loop and Old loop, so a value here says nothing about a value there.',
+      'A scale of its own: the data do not tell how far apart these antennas and North-east wire, Vertical, South loop and Old loop are. A value here says nothing about a value there.',
     );
   });
 

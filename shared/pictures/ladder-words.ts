@@ -37,7 +37,9 @@ export function zeroWords({ referenceAntennaId, antennas }: LadderComponent): st
   if (reference) return reference.name;
   // An antenna that one station-night carries has no share in the mean.
   const counted = antennas.filter(({ chanceBest }) => chanceBest !== null).length;
-  return `the mean of ${counted === antennas.length ? 'these' : 'the best-linked'} ${countOf(counted, 'antenna')}`;
+  return counted === 0 || counted === antennas.length
+    ? `the mean of these ${countOf(antennas.length, 'antenna')}`
+    : `the mean of the ${countOf(counted, 'antenna')} with enough evidence`;
 }
 
 /** Beside the value: its interval, or why there is none. */
@@ -114,7 +116,11 @@ export function consistencyWords(pair: LadderPair): { state: Consistency; words:
   return consistent
     ? {
         state: 'agree',
-        words: `Direct and indirect evidence agree: ${apart}, p ${pText(consistencyP)}.`,
+        // A small p of one among many is what luck gives; the adjusted one has cleared it.
+        words:
+          consistencyP !== null && consistencyP < 0.05
+            ? `Direct and indirect evidence differ no more than luck allows among so many pairs: ${apart}, p ${pText(consistencyP)} before adjustment.`
+            : `Direct and indirect evidence agree: ${apart}, p ${pText(consistencyP)}.`,
       }
     : {
         state: 'disagree',
@@ -146,8 +152,8 @@ export function apartWords(component: LadderComponent, others: readonly LadderCo
   const names = (list: readonly LadderAntenna[]) => enumerate(list.map(({ name }) => name));
   const rest = names(others.flatMap(({ antennas }) => antennas));
   return component.antennas.length === 1
-    ? `${names(component.antennas)} cannot be set beside ${rest}: nothing links them.`
-    : `A scale of its own: nothing links these antennas to ${rest}, so a value here says nothing about a value there.`;
+    ? `${names(component.antennas)} cannot be set beside ${rest}: the data do not tell how far apart they are.`
+    : `A scale of its own: the data do not tell how far apart these antennas and ${rest} are. A value here says nothing about a value there.`;
 }
 
 /** Units that the choice leaves out, by reason; empty when there are none. */

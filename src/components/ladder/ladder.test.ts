@@ -71,7 +71,7 @@ describe('the answer of a ladder', () => {
       .map((title) => title.text());
     expect(titles).toEqual(['Scale 1 of 2', 'Scale 2 of 2']);
     expect(plain(show().findAll('.apart')[1]!.text())).toContain(
-      'A scale of its own: nothing links these antennas to North-east wire, Vertical, South loop and Old loop',
+      'A scale of its own: the data do not tell how far apart these antennas and North-east wire',
     );
   });
 
@@ -85,8 +85,9 @@ describe('the answer of a ladder', () => {
       },
     });
     expect(shown.findAll('.scales h3').map((title) => title.text())).toEqual(['The ladder']);
+    expect(shown.find('.apart').exists()).toBe(false);
     expect(plain(shown.get('[aria-label="Antennas on no scale"]').text())).toContain(
-      'West wire cannot be set beside North-east wire, Vertical, South loop and Old loop: nothing links them.',
+      'West wire cannot be set beside North-east wire, Vertical, South loop and Old loop: the data do not tell how far apart they are.',
     );
   });
 
