@@ -90,16 +90,16 @@ describe('ground truth', () => {
   });
 
   it('is held where the receivers were exchanged unevenly, which the naive method takes for a difference', () => {
-    const [holds, better] = run('uneven', 200);
+    const [holds, better] = run('uneven', 120);
     expectCoverage(holds!);
     expectFewErrors(better!);
     expect(better!.theirs!.value).toBeGreaterThan(0.9);
   });
 
   it('is seldom called practically equal at a difference of exactly the margin', () => {
-    const [equal, clearly] = run('margin', 200);
+    const [equal, clearly] = run('margin', 150);
     expectFewErrors(equal!);
-    expect(clearly!.ours!.value).toBeLessThanOrEqual(0.025 + slack(0.025, 200));
+    expect(clearly!.ours!.value).toBeLessThanOrEqual(0.025 + slack(0.025, 150));
   });
 
   it('stays in the peek-proof interval on every night, where the fixed interval loses it far more often', () => {
@@ -109,7 +109,7 @@ describe('ground truth', () => {
   });
 
   it('is held by two-way intervals where nights truly differ', () => {
-    expectCoverage(run('nights-two-way', 120)[0]!);
+    expectCoverage(run('nights-two-way', 80)[0]!);
   });
 
   it('is met by the censored estimate where the stations heard on both alone mislead', () => {
