@@ -52,7 +52,7 @@ describe('the main job in a browser', () => {
       /95\u2009% interval .* from [\d,]+ units of [\d,]+ stations in \d+ nights\./,
     );
     await verdict.first().waitFor();
-    await page.getByRole('heading', { name: 'When' }).waitFor();
+    await page.getByRole('heading', { name: 'When', exact: true }).waitFor();
     expect(await page.locator('figure canvas').count()).toBeGreaterThanOrEqual(4);
   });
 
