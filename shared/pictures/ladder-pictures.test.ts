@@ -7,6 +7,7 @@ import {
   apartWords,
   chanceText,
   consistencyWords,
+  doubtWords,
   findPair,
   intervalWords,
   isLoneBridge,
@@ -112,6 +113,17 @@ describe('the words of a ladder', () => {
       'one station-night carries it',
     );
     expect(intervalWords({ ...main.antennas[0]!, valueDb: null }, main)).toBe('nothing to measure against');
+  });
+
+  it('say of thin evidence only what falls short', () => {
+    const thinly = (clusters: number, nights: number) =>
+      doubtWords({ ...main.antennas[0]!, speaks: false, clusters, nights });
+    expect([thinly(155, 1), thinly(5, 2), thinly(40, 9)]).toEqual([
+      ['thin: 1 night'],
+      ['thin: 5 station-nights, 2 nights'],
+      ['thin: no interval'],
+    ]);
+    expect(doubtWords(main.antennas[0]!)).toEqual([]);
   });
 
   it('never call a chance a certainty', () => {

@@ -56,7 +56,11 @@ export function doubtWords(antenna: LadderAntenna): string[] {
   const doubts: string[] = [];
   if (!antenna.inService) doubts.push('out of service');
   if (!antenna.speaks) {
-    doubts.push(`thin: ${countOf(antenna.clusters, 'station-night')}, ${countOf(antenna.nights, 'night')}`);
+    const short = [
+      ...(antenna.clusters < 8 ? [countOf(antenna.clusters, 'station-night')] : []),
+      ...(antenna.nights < 3 ? [countOf(antenna.nights, 'night')] : []),
+    ];
+    doubts.push(`thin: ${short.length > 0 ? short.join(', ') : 'no interval'}`);
   }
   return doubts;
 }
