@@ -1,5 +1,5 @@
 import type { LadderPair } from '../../../shared/contracts/ladder.ts';
-import { formatDb, formatDbInterval, formatShare } from '../../../shared/format.ts';
+import { formatDb, formatShare } from '../../../shared/format.ts';
 import { pText } from '../../../shared/pictures/fairness-words.ts';
 import { isLoneBridge } from '../../../shared/pictures/ladder-words.ts';
 import type { DataColumn } from '../base/data-table.ts';
@@ -32,10 +32,9 @@ export function pairColumns(nameOf: (antennaId: number) => string): Column[] {
       value: ({ a, b }) => `${nameOf(a)} \u2212 ${nameOf(b)}`,
     },
     db('difference', 'Difference', 'The first named minus the second', ({ differenceDb }) => differenceDb),
-    {
-      ...{ key: 'interval', label: '95\u2009% interval', align: 'end' },
-      value: ({ intervalDb }) => (intervalDb ? formatDbInterval(intervalDb) : 'none'),
-    },
+    ...(['Low', 'High'] as const).map((label, end) =>
+      db(label, label, 'Ends of the 95\u2009% interval', ({ intervalDb }) => intervalDb?.[end] ?? null),
+    ),
     {
       ...{ key: 'p', label: 'Adjusted p', align: 'end', sortable: true },
       hint: 'Adjusted over all pairs (Benjamini-Hochberg)',
