@@ -1,4 +1,5 @@
 import { spawn } from 'node:child_process';
+import { readdirSync } from 'node:fs';
 import { fileURLToPath } from 'node:url';
 import { DataSource, type MigrationInterface, type QueryRunner } from 'typeorm';
 import { afterEach, beforeEach, expect, test } from 'vitest';
@@ -28,6 +29,15 @@ afterEach(async () => {
 });
 
 const names = migrations.map((migration) => migration.name);
+
+test('every migration of the folder is in the list, oldest first', () => {
+  const folder = new URL('../../server/database/migrations/', import.meta.url);
+  const stamps = readdirSync(folder)
+    .filter((file) => file !== 'index.ts')
+    .map((file) => file.split('-')[0]!)
+    .sort();
+  expect(names.map((name) => name.slice(-13))).toEqual(stamps);
+});
 
 test('of five processes that migrate at once, one does it and the others find it done', async () => {
   const dataSources = await Promise.all(Array.from({ length: 5 }, open));
