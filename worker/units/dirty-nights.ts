@@ -107,6 +107,8 @@ async function followWithOtherRules(
       await makeNight(manager, station, night, parseRulesKey(rules_key), nowMs);
       continue;
     }
+    // Live spots change this night all the time: its units are left as they are and count as old once it is over.
+    if (night === nightIndexOf(nowMs, station.longitudeDeg)) continue;
     for (const table of ['unit_pack', 'unit_night']) {
       await manager.query(`DELETE FROM ${table} WHERE station_id = $1 AND rules_key = $2 AND night = $3`, [
         station.id,

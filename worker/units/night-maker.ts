@@ -113,7 +113,9 @@ async function store(
     ],
   );
   await manager.query(
-    'INSERT INTO unit_night (station_id, rules_key, night, spots, tally) VALUES ($1, $2, $3, $4, $5)',
+    // The clock's time, not the transaction's: what is made later must look later, however long it waited.
+    `INSERT INTO unit_night (station_id, rules_key, night, spots, tally, made_at)
+     VALUES ($1, $2, $3, $4, $5, clock_timestamp())`,
     [stationId, key, night, spots, JSON.stringify(tallyOf(result))],
   );
   return spots;

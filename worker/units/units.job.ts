@@ -1,4 +1,5 @@
 import { Station } from '../../server/database/entities/station.ts';
+import { findMissingNights } from '../../server/database/missing-nights.ts';
 import { inTransaction } from '../../server/database/transaction.ts';
 import { parseRulesKey, rulesKey } from '../../shared/pairing/index.ts';
 import { nightIndexOfDate } from '../../shared/radio/night.ts';
@@ -11,14 +12,14 @@ export const runUnitsJob: JobHandler<'units'> = async ({ job, dataSource, signal
   const { stationId, payload } = job;
   const rules = parseRulesKey(payload.rulesKey);
   const station = await dataSource.manager.findOneByOrFail(Station, { id: stationId });
-  const missing: { night: string }[] = await dataSource.query(
-    `SELECT night FROM unit_night s WHERE station_id = $1 AND rules_key = $2
-       AND NOT EXISTS (SELECT 1 FROM unit_night o WHERE o.station_id = $1 AND o.rules_key = $3 AND o.night = s.night)
-     ORDER BY night DESC`,
-    [stationId, rulesKey(standingRules(station)), payload.rulesKey],
-  );
+  const missing = await findMissingNights(dataSource.manager, {
+    stationId,
+    standingKey: rulesKey(standingRules(station)),
+    rulesKey: payload.rulesKey,
+    ...{ fromNight: null, toNight: null, tonight: null },
+  });
   progress(0, missing.length);
-  for (const [done, { night }] of missing.entries()) {
+  for (const [done, night] of missing.entries()) {
     signal.throwIfAborted();
     const index = nightIndexOfDate(night);
     await inTransaction(dataSource, async (manager) => {

@@ -46,7 +46,7 @@ export function createComparisonService(deps: Deps) {
     ];
     if (!a || !b || unknown.length > 0) throw new InvalidRequest('Some fields have to change.', unknown);
 
-    const wanted = { station, rules: question.rules, nights: question, actor };
+    const wanted = { station, rules: question.rules, nights: question, actor, nowMs: deps.now() };
     const jobId = await prepareUnits(dataSource, wanted);
     if (jobId !== null) return { pending: true, jobId };
     const inForce = rulesInForce(station, question.rules);

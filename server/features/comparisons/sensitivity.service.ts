@@ -44,7 +44,7 @@ export function createSensitivityService(deps: Deps) {
 
     for (const { rules, ...name } of ruleVariants(base.input.rules)) {
       signal?.throwIfAborted();
-      const wanted = { station, rules, nights: question, actor };
+      const wanted = { station, rules, nights: question, actor, nowMs: deps.now() };
       const state = await unitsState(deps.dataSource, wanted);
       if (!state.ready) {
         const jobId = prepare && mayMake ? await prepareUnits(deps.dataSource, wanted) : state.jobId;

@@ -39,6 +39,7 @@ export function createLadderService(deps: Deps) {
         rules: question.rules,
         nights: question,
         actor,
+        nowMs: deps.now(),
       });
       if (jobId !== null) return { pending: true, jobId };
       const { rules, rulesKey, standing } = rulesInForce(station, question.rules);

@@ -5,11 +5,12 @@ import type { Station as StationReply } from '../../../shared/contracts/station.
 import { rulesKey } from '../../../shared/pairing/index.ts';
 import type { PairingRules } from '../../../shared/pairing/index.ts';
 import { nightDate, nightIndexOf } from '../../../shared/radio/night.ts';
+import { findMissingNights } from '../../database/missing-nights.ts';
 import { inTransaction } from '../../database/transaction.ts';
 import { NotAllowed } from '../../platform/errors.ts';
 import { enqueueJob } from '../../platform/job-queue.ts';
 import type { Actor } from '../../platform/route.ts';
-import { countMissingNights, findUnitsJob, type NightRange } from './units.read-model.ts';
+import { findUnitsJob, type NightRange } from './units.read-model.ts';
 
 export interface UnitsWanted {
   station: StationReply;
@@ -17,6 +18,7 @@ export interface UnitsWanted {
   rules: PairingRulesInput | null;
   nights: NightRange;
   actor: Actor;
+  nowMs: number;
 }
 
 export interface RulesInForce {
@@ -70,19 +72,20 @@ export async function prepareUnits(dataSource: DataSource, wanted: UnitsWanted):
 /** Whether the units exist, and the job that is making them; changes nothing. */
 export async function unitsState(
   dataSource: DataSource,
-  { station, rules, nights }: Pick<UnitsWanted, 'station' | 'rules' | 'nights'>,
+  { station, rules, nights, nowMs }: Omit<UnitsWanted, 'actor'>,
 ): Promise<{ ready: boolean; jobId: number | null }> {
   const { rulesKey: key, standing } = rulesInForce(station, rules);
   if (standing) return { ready: true, jobId: null };
   const { manager } = dataSource;
-  const missing = await countMissingNights(
-    manager,
-    station.id,
-    rulesKey(standingRules(station)),
-    key,
-    nights,
-  );
-  if (missing === 0) return { ready: true, jobId: null };
+  const missing = await findMissingNights(manager, {
+    stationId: station.id,
+    standingKey: rulesKey(standingRules(station)),
+    rulesKey: key,
+    fromNight: nights.fromNight,
+    toNight: nights.toNight,
+    tonight: nightDate(nightIndexOf(nowMs, station.longitudeDeg)),
+  });
+  if (missing.length === 0) return { ready: true, jobId: null };
   return { ready: false, jobId: await findUnitsJob(manager, station.id, key) };
 }
 

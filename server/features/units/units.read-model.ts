@@ -14,7 +14,10 @@ export interface PairUnits {
   heardOnly: HeardOnlyColumns;
 }
 
-/** The packed units of two antennas over a range of nights. A season of one pair is read in about 10 ms. */
+/**
+ * The packed units of two antennas over a range of nights, and those that two receivers on one antenna made.
+ * A season of one pair is read in about 10 ms.
+ */
 export async function readPairUnits(
   manager: EntityManager,
   stationId: number,
@@ -24,9 +27,10 @@ export async function readPairUnits(
 ): Promise<PairUnits> {
   const rows: { units: Buffer; heard_only: Buffer }[] = await manager.query(
     `SELECT units, heard_only FROM unit_pack
-     WHERE station_id = $1 AND rules_key = $2 AND antenna_a = $3 AND antenna_b = $4
+     WHERE station_id = $1 AND rules_key = $2
+       AND ((antenna_a = $3 AND antenna_b = $4) OR antenna_a = antenna_b)
        AND night >= coalesce($5::date, '-infinity') AND night <= coalesce($6::date, 'infinity')
-     ORDER BY night`,
+     ORDER BY antenna_a = antenna_b, night, antenna_a`,
     [stationId, rulesKey, Math.min(...antennas), Math.max(...antennas), nights.fromNight, nights.toNight],
   );
   return {
@@ -83,24 +87,6 @@ export async function readNightTallies(
     );
   // A night that the worker has not made anew since levels are counted has none yet.
   return rows.map(({ night, tally }) => ({ night, tally: { ...tally, levels: tally.levels ?? [] } }));
-}
-
-/** Nights in the range that were made under the standing rules and not yet under the others. */
-export async function countMissingNights(
-  manager: EntityManager,
-  stationId: number,
-  standingKey: string,
-  rulesKey: string,
-  nights: NightRange,
-): Promise<number> {
-  const rows: { missing: number }[] = await manager.query(
-    `SELECT count(*)::int AS missing FROM unit_night s
-     WHERE s.station_id = $1 AND s.rules_key = $2
-       AND s.night >= coalesce($4::date, '-infinity') AND s.night <= coalesce($5::date, 'infinity')
-       AND NOT EXISTS (SELECT 1 FROM unit_night o WHERE o.station_id = $1 AND o.rules_key = $3 AND o.night = s.night)`,
-    [stationId, standingKey, rulesKey, nights.fromNight, nights.toNight],
-  );
-  return rows[0]!.missing;
 }
 
 /** Hours marked dirty, oldest first; the service turns them into nights. */
