@@ -17,7 +17,7 @@ import { peekProofLine } from './peek-proof.ts';
 import { comparisonPlanning } from './planning.ts';
 import { pooledPictures, poolCells } from './pooling.ts';
 import { rankView } from './rank-view.ts';
-import { selectHeardOnly } from './selection.ts';
+import { selectHeardOnly } from './heard-only-selection.ts';
 import { histogram, stationRows } from './stations.ts';
 
 /** Rows of the station table that travel to the browser; the CSV has all. */
@@ -34,7 +34,8 @@ export function answerComparison(input: ComparisonInput): ComparisonResult {
   const { selected: units, offsets, clusters, counts, correctedDb, separable, test } = fitted;
   const heardOnly = selectHeardOnly(input);
   const stations = stationRows(input, units, correctedDb, heardOnly);
-  const cellsOf = (layout: Layout) => comparisonCells(units, offsets, clusters, layout, question.clustering);
+  const cellsOf = (layout: Layout) =>
+    comparisonCells(units, fitted.rows, offsets, clusters, layout, question.clustering);
   const [sectors, bandHours, nights] = [cellsOf(bySector), cellsOf(byBandAndHour), cellsOf(byNight)];
   // Writes the pooled values into the cells.
   const pooling = {
@@ -43,7 +44,7 @@ export function answerComparison(input: ComparisonInput): ComparisonResult {
     nights: poolCells(nights, pooledPictures.nights),
   };
   const censored = separable
-    ? censoredView(input, units, heardOnly, offsets, fitted.estimate?.estimateDb ?? null)
+    ? censoredView(input, fitted, heardOnly)
     : { view: null, why: 'The antennas cannot be separated from the receivers.' };
   const peekProof =
     separable && units.n > 0
@@ -76,7 +77,7 @@ export function answerComparison(input: ComparisonInput): ComparisonResult {
     ...{ censored: censored.view, peekProof, planning },
     views: {
       censored: censored.why,
-      peekProof: peekProof === null ? 'Too few station-nights yet: 8 of 3 nights are needed.' : null,
+      peekProof: peekProof === null ? 'Too early: 8 station-nights from 3 nights are needed first.' : null,
       planning: planning === null ? 'There is no spread yet to plan with.' : null,
     },
     histogram: histogram(correctedDb),

@@ -1,6 +1,8 @@
 import type { ComparisonCell, ComparisonQuestion } from '../contracts/comparison.ts';
 import { nightDate } from '../radio/night.ts';
-import { benjaminiHochberg, clusterIds, clusterRegression } from '../stats/index.ts';
+import { benjaminiHochberg, clusterRegression } from '../stats/index.ts';
+import { inNoCell } from './common-antenna.ts';
+import { twoWays } from './fit.ts';
 import type { OffsetColumn } from './offsets.ts';
 import type { CellWithError } from './pooling.ts';
 import { NO_HOUR, NO_SECTOR } from './selection.ts';
@@ -43,10 +45,12 @@ export const byNight: Layout = {
 
 /**
  * One regression with an indicator per cell in place of the intercept: every cell shares the receiver
- * offsets and their uncertainty. Adjusted p across the cells that speak (Benjamini and Hochberg).
+ * offsets and their uncertainty. Adjusted p across the cells that speak (Benjamini and Hochberg). `all` are
+ * the units, followed by those of common antennas, which are in no cell.
  */
 export function comparisonCells(
   units: SelectedUnits,
+  all: SelectedUnits,
   offsets: OffsetColumn[],
   clusters: Int32Array,
   layout: Layout,
@@ -54,28 +58,37 @@ export function comparisonCells(
 ): CellWithError[] {
   const { rows, cell, keys } = layOut(units, layout);
   if (rows.length === 0) return [];
-  const whole = rows.length === units.n;
+  const used = followedBy(rows, units.n, all.n);
+  const whole = used.length === all.n;
+  const cells = new Int32Array(used.length);
+  cells.set(cell);
+  const stationNights = whole ? clusters : used.map((i) => clusters[i]!);
+  // The cells of one night have but one night: their own picture stays one-way.
+  const { calls, nights: nightIds } =
+    clustering === 'two-way' && layout.minNights > 1
+      ? twoWays({ call: used.map((i) => all.call[i]!), night: used.map((i) => all.night[i]!) })
+      : {};
   const fit = clusterRegression(
     {
-      cells: cell,
+      cells: inNoCell(cells, rows.length),
       cellCount: keys.length,
-      columns: offsets.map((o) => (whole ? o.values : pick(o.values, rows))),
+      columns: offsets.map((o) => (whole ? o.values : pick(o.values, used))),
     },
-    whole ? units.differenceDb : pick(units.differenceDb, rows),
-    whole ? clusters : rows.map((i) => clusters[i]!),
-    // The cells of one night have but one night: their own picture stays one-way.
-    clustering === 'two-way' && layout.minNights > 1
-      ? { secondClusters: clusterIds(Array.from(rows, (i) => units.night[i]!)).ids }
-      : {},
+    whole ? all.differenceDb : pick(all.differenceDb, used),
+    calls ?? stationNights,
+    nightIds ? { secondClusters: nightIds } : {},
   );
   const nights = nightsPerCell(units, rows, cell, keys.length);
-  const cells = keys.map((key, index): CellWithError => {
+  // Evidence is counted in station-nights, whatever the ways of the errors.
+  const evidence = calls ? clustersPerCell(stationNights, cell, keys.length) : null;
+  const found = keys.map((key, index): CellWithError => {
     const c = fit.coefficients[index]!;
-    const enough = c.clusters >= CELL_MIN_CLUSTERS && nights[index]! >= layout.minNights;
-    const cell: ComparisonCell = {
+    const clusterCount = evidence ? evidence[index]! : c.clusters;
+    const enough = clusterCount >= CELL_MIN_CLUSTERS && nights[index]! >= layout.minNights;
+    const own: ComparisonCell = {
       ...layout.placeOf(key),
       units: c.rows,
-      clusters: c.clusters,
+      clusters: clusterCount,
       nights: nights[index]!,
       estimateDb: c.estimate,
       intervalDb: c.interval && [c.interval[0], c.interval[1]],
@@ -85,12 +98,12 @@ export function comparisonCells(
       pooledDb: null,
       pooledIntervalDb: null,
     };
-    return { cell, seDb: c.se };
+    return { cell: own, seDb: c.se };
   });
-  const speaking = cells.map(({ cell }) => cell).filter((c) => c.speaks && c.p !== null);
+  const speaking = found.map(({ cell: own }) => own).filter((c) => c.speaks && c.p !== null);
   const { adjusted } = benjaminiHochberg(speaking.map((c) => c.p!));
   speaking.forEach((c, k) => (c.pAdjusted = adjusted[k]!));
-  return cells;
+  return found;
 }
 
 interface Cells {
@@ -121,10 +134,32 @@ function layOut(units: SelectedUnits, layout: Layout): Cells {
   return { rows: rows.subarray(0, n), cell: keyOfRow.subarray(0, n).map((key) => known.get(key)!), keys };
 }
 
+/** The rows, and after them all from `from` to `end`. */
+function followedBy(rows: Int32Array, from: number, end: number): Int32Array {
+  if (from === end) return rows;
+  const used = new Int32Array(rows.length + end - from);
+  used.set(rows);
+  for (let i = from; i < end; i++) used[rows.length + i - from] = i;
+  return used;
+}
+
 function pick(values: Float64Array, rows: Int32Array): Float64Array {
   const picked = new Float64Array(rows.length);
   for (let k = 0; k < rows.length; k++) picked[k] = values[rows[k]!]!;
   return picked;
+}
+
+/** Distinct clusters in each cell; `cell` belongs to the first of the cluster ids. */
+function clustersPerCell(clusters: Int32Array, cell: Int32Array, cellCount: number): Int32Array {
+  const counts = new Int32Array(cellCount);
+  const seen = new Set<number>();
+  cell.forEach((own, k) => {
+    const key = clusters[k]! * cellCount + own;
+    if (seen.has(key)) return;
+    seen.add(key);
+    counts[own]!++;
+  });
+  return counts;
 }
 
 /** Distinct nights in each cell, by one flag a cell and night. */

@@ -2,10 +2,12 @@ import type { ComparisonAnswer } from '../contracts/comparison.ts';
 import { censoredMean, clusterIds } from '../stats/index.ts';
 import type { CensoredReason } from '../stats/index.ts';
 import { clusterKeys } from './fairness.ts';
+import type { Fitted } from './fit.ts';
+import type { SelectedHeardOnly } from './heard-only-selection.ts';
 import type { ComparisonInput } from './input.ts';
 import { receiverOnBand } from './offsets.ts';
 import type { OffsetColumn } from './offsets.ts';
-import type { SelectedHeardOnly, SelectedUnits } from './selection.ts';
+import type { SelectedUnits } from './selection.ts';
 import { decibels } from './wording.ts';
 
 type Censored = NonNullable<ComparisonAnswer['censored']>;
@@ -60,19 +62,24 @@ function quantileOfCounts(sorted: [value: number, count: number][], n: number, s
 /**
  * The estimate with the stations that one antenna alone heard: a difference of at least (SNR heard on A) -
  * (limit of the receiver on B), or at most (limit on A) - (SNR heard on B). Receiver offsets are fitted
- * with it. Standard errors by (call sign, night).
+ * with it; where units of common antennas tell them, those offsets are taken out beforehand instead.
+ * Standard errors by (call sign, night).
  */
 export function censoredView(
   input: ComparisonInput,
-  units: SelectedUnits,
+  fitted: Fitted,
   heardOnly: SelectedHeardOnly,
-  offsets: OffsetColumn[],
-  plainDb: number | null,
 ): CensoredOutcome {
+  const { selected: units, offsets } = fitted;
+  const plainDb = fitted.estimate?.estimateDb ?? null;
   const limits = hearingLimits(input.nights);
   const rows = censoredRows(units, heardOnly, offsets, limits);
+  if (fitted.rows.n > units.n) takeOut(rows, fitted.rho);
   if (rows.onlyA + rows.onlyB === 0) {
-    return { view: null, why: 'Every station was heard on both antennas: there is nothing to add.' };
+    return {
+      view: null,
+      why: 'No station counts as heard on one antenna only (in no block, or in none in which both antennas were listened to alike): there is nothing to add.',
+    };
   }
   const fit = censoredMean(
     { lower: rows.lower, upper: rows.upper },
@@ -149,7 +156,7 @@ function censoredRows(
   upper.set(units.differenceDb);
   const columns = offsets.map(({ values }) => {
     const column = new Float64Array(n);
-    column.set(values);
+    column.set(values.subarray(0, units.n));
     return column;
   });
   let onlyA = 0;
@@ -180,6 +187,17 @@ function censoredRows(
   };
 }
 
+/** Known offsets out of the bounds, and their columns with them. */
+function takeOut(rows: CensoredRows, rho: Float64Array): void {
+  rows.columns.forEach((column, k) => {
+    for (let i = 0; i < column.length; i++) {
+      rows.lower[i]! -= column[i]! * rho[k]!;
+      rows.upper[i]! -= column[i]! * rho[k]!;
+    }
+  });
+  rows.columns = [];
+}
+
 /** Receivers of simultaneous units by band: those whose offsets the regression knows. */
 function knownReceivers(units: SelectedUnits): Set<number> {
   const known = new Set<number>();
@@ -206,6 +224,9 @@ function censoredSentence(input: ComparisonInput, words: CensoredWords): string 
     `${onlyA.toLocaleString('en-GB')} heard on ${a.name} only and ` +
     `${onlyB.toLocaleString('en-GB')} on ${b.name} only`;
   if (plainDb === null) return `With those ${counts}, the difference is ${decibels(estimateDb)}\u2009dB.`;
+  if (decibels(plainDb) === decibels(estimateDb)) {
+    return `Counting those ${counts} does not move the difference of ${decibels(plainDb)}\u2009dB.`;
+  }
   if (!disagrees) {
     return (
       `Counting those ${counts} moves the difference from ${decibels(plainDb)} to ${decibels(estimateDb)}\u2009dB, ` +

@@ -2,7 +2,8 @@ import type { ComparisonAnswer } from '../contracts/comparison.ts';
 import { benjaminiHochberg, clusterIds, majorityByCluster, mcnemar } from '../stats/index.ts';
 import type { ComparisonInput } from './input.ts';
 import { NO_SECTOR } from './selection.ts';
-import type { LeftOut, SelectedHeardOnly, SelectedUnits } from './selection.ts';
+import type { SelectedHeardOnly } from './heard-only-selection.ts';
+import type { LeftOut, SelectedUnits } from './selection.ts';
 
 type Fairness = ComparisonAnswer['fairness'];
 

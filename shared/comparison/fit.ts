@@ -1,6 +1,7 @@
 import type { ComparisonAnswer, VerdictCode } from '../contracts/comparison.ts';
 import { clusterIds, clusterRegression, equivalence, verdict } from '../stats/index.ts';
 import type { Coefficient, EquivalenceResult } from '../stats/index.ts';
+import { inNoCell, selectCommonAntenna, withCommonAntenna } from './common-antenna.ts';
 import { clusterKeys } from './fairness.ts';
 import type { ComparisonInput } from './input.ts';
 import { offsetColumns, withoutOffsets } from './offsets.ts';
@@ -21,11 +22,15 @@ export interface ComparisonEstimate {
 
 export interface Fitted extends ComparisonEstimate {
   selected: SelectedUnits;
+  /** The same, followed by the units of common antennas; `offsets` and `clusters` are over these. */
+  rows: SelectedUnits;
   leftOut: ReturnType<typeof selectUnits>['leftOut'];
   offsets: OffsetColumn[];
   clusters: Int32Array;
   separable: boolean;
   coefficients: readonly Coefficient[];
+  /** The receivers' offsets, one per column; 0 where the data do not tell them. */
+  rho: Float64Array;
   /** Of the estimate, with station-nights as the only clusters; null where there is none. */
   oneWaySeDb: number | null;
   /** Differences with the receiver offsets taken out, as far as they are known. */
@@ -46,22 +51,30 @@ export function fitComparison(input: ComparisonInput, options: FitOptions = {}):
   const { question, antennas, marginDb } = input;
   const { units: asked, leftOut } = selectUnits(input);
   const units = options.withoutHeaviest ? dropHeaviest(asked, options.withoutHeaviest) : asked;
-  const offsets = offsetColumns(units);
-  const { ids: clusters, count: clusterCount } = clusterIds(clusterKeys(units));
-  const fit =
-    units.n === 0
-      ? null
-      : clusterRegression(
-          { cells: new Int32Array(units.n), cellCount: 1, columns: offsets.map((o) => o.values) },
-          units.differenceDb,
-          clusters,
-          {
-            ...(options.equalStations ? { weights: stationWeights(units) } : {}),
-            ...(question.clustering === 'two-way'
-              ? { secondClusters: clusterIds(Array.from(units.night)).ids }
-              : {}),
-          },
-        );
+  const common = selectCommonAntenna(input, units);
+  const rows = withCommonAntenna(units, common);
+  const offsets = offsetColumns(rows);
+  // Units come first, and so do their clusters: the first `clusterCount` are theirs.
+  const clusters = clusterIds(clusterKeys(rows)).ids;
+  const clusterCount = clusters.subarray(0, units.n).reduce((most, id) => Math.max(most, id + 1), 0);
+  const weights = options.equalStations ? { weights: stationWeights(rows) } : {};
+  const regress = (ids: Int32Array, secondWay: { secondClusters?: Int32Array }) =>
+    clusterRegression(
+      {
+        cells: inNoCell(new Int32Array(rows.n), units.n),
+        cellCount: 1,
+        columns: offsets.map((o) => o.values),
+      },
+      rows.differenceDb,
+      ids,
+      { ...weights, ...secondWay },
+    );
+  const oneWay = units.n === 0 ? null : regress(clusters, {});
+  let fit = oneWay;
+  if (oneWay && question.clustering === 'two-way') {
+    const { calls, nights } = twoWays(rows);
+    fit = regress(calls, { secondClusters: nights });
+  }
   const theta = fit?.coefficients[0] ?? null;
   const separable = theta === null || theta.reason !== 'cannot-be-separated';
   const test = fit && theta?.estimable ? equivalenceOf(theta, fit.df, marginDb) : null;
@@ -98,16 +111,26 @@ export function fitComparison(input: ComparisonInput, options: FitOptions = {}):
     estimate,
     counts,
     selected: units,
+    rows,
     leftOut,
     offsets,
     clusters,
     separable,
     coefficients: fit?.coefficients ?? [],
-    oneWaySeDb: fit && estimate ? Math.sqrt((fit.oneWayCovariances[0] ?? fit.covariance)![0]!) : null,
+    rho: fit?.solution.subarray(1) ?? new Float64Array(0),
+    oneWaySeDb: estimate ? (oneWay?.coefficients[0]?.se ?? null) : null,
     correctedDb:
       separable && fit ? withoutOffsets(units, offsets, fit.solution.subarray(1)) : units.differenceDb,
     test,
   };
+}
+
+/** The two ways of two-way clusters: call sign, and night (Cameron, Gelbach and Miller 2011). */
+export function twoWays(rows: Pick<SelectedUnits, 'call' | 'night'>): {
+  calls: Int32Array;
+  nights: Int32Array;
+} {
+  return { calls: clusterIds(Array.from(rows.call)).ids, nights: clusterIds(Array.from(rows.night)).ids };
 }
 
 /** Only the verdict; several hundred a second where an hour of one band is asked for. */

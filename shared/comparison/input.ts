@@ -44,7 +44,10 @@ export interface ComparisonInput {
   marginDb: number;
   sectorCount: number;
   station: { latitude: number; longitude: number };
-  /** Units of the two antennas over the nights asked for, antenna A being the lower id as they are stored. */
+  /**
+   * Units of the two antennas over the nights asked for, antenna A being the lower id as they are stored; and
+   * those that two receivers on one and the same antenna made, whichever it was: they tell receivers apart.
+   */
   units: UnitColumns;
   heardOnly: HeardOnlyColumns;
   /** By call id. */

@@ -1,6 +1,7 @@
 import type { ComparisonAnswer } from '../contracts/comparison.ts';
 import type { ComparisonInput } from './input.ts';
-import type { SelectedHeardOnly, SelectedUnits } from './selection.ts';
+import type { SelectedHeardOnly } from './heard-only-selection.ts';
+import type { SelectedUnits } from './selection.ts';
 
 type StationRow = ComparisonAnswer['stations'][number];
 

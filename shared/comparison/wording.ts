@@ -37,7 +37,7 @@ export function verdictSentence(words: VerdictWords): string {
       : '');
   const evidence = `${plural(counts.units, 'unit')} of ${plural(counts.stations, 'station')} in ${plural(counts.nights, 'night')}`;
   if (code === 'cannot be separated') {
-    return `${nameA} and ${nameB} cannot be separated from the receivers they were on${where}: ${words.tangle} (${evidence}).`;
+    return `${nameA} and ${nameB} cannot be separated from their receivers${where}: ${words.tangle} (${evidence}).`;
   }
   if (!estimate) {
     return counts.units === 0

@@ -109,16 +109,21 @@ describe('obstacles of a ladder', () => {
     ]);
   });
 
-  it('puts two receivers on one antenna only where a third one listens meanwhile', () => {
-    const cures = (receivers: number) =>
-      answerLadder(input(heard(1, 2, 2, [1, 2]), { antennas: 2, receivers })).obstacles[0]!.cures;
-    expect(cures(2)).toEqual([
+  it('offers to put both receivers on one antenna, and units made so do tell them apart', () => {
+    const tangled = heard(1, 2, 2, [1, 2]);
+    const [obstacle] = answerLadder(input(tangled, { antennas: 2, receivers: 2 })).obstacles;
+    expect(obstacle!.cures).toEqual([
       'Swap the two antennas for about 40 minutes: Wire 1 on EI7QSB and Wire 2 on EI7QSA.',
+      'Or put both EI7QSA and EI7QSB on Wire 1 for about 40 minutes.',
       'Or let one receiver alternate between Wire 1 and Wire 2, a few minutes each.',
     ]);
-    expect(cures(3)[1]).toBe(
-      'Or put both EI7QSA and EI7QSB on Wire 1 for about 40 minutes while EI7QSC listens on Wire 2.',
+    const cured = answerLadder(
+      input([...tangled, ...heard(1, 1, 0.5, [1, 2])], { antennas: 2, receivers: 2 }),
     );
+    expect(cured.obstacles).toEqual([]);
+    // On one antenna EI7QSA reports 0.5 dB more: of the 2 dB, so much was the receiver.
+    expect(cured.components[0]!.pairs[0]!.differenceDb).toBeCloseTo(1.5, 9);
+    expect(cured.components[0]!.antennas.map(({ name }) => name)).toEqual(['Wire 1', 'Wire 2']);
   });
 
   it('advises nothing about an antenna that is down', () => {

@@ -95,13 +95,10 @@ class ObstacleFinder {
         words: `swap the two antennas ${minutes}: ${this.antenna(x)} on ${this.receiver(ry)} and ${this.antenna(y)} on ${this.receiver(rx)}`,
         contacts: [meet(x, ry, y, rx)],
       });
-      const third = this.inUse.find((id) => id !== rx && id !== ry);
-      if (third !== undefined) {
-        cures.push({
-          words: `put both ${this.receiver(rx)} and ${this.receiver(ry)} on ${this.antenna(x)} ${minutes} while ${this.receiver(third)} listens on ${this.antenna(y)}`,
-          contacts: [meet(x, rx, y, third), meet(x, ry, y, third)],
-        });
-      }
+      cures.push({
+        words: `put both ${this.receiver(rx)} and ${this.receiver(ry)} on ${this.antenna(x)} ${minutes}`,
+        contacts: [meet(x, rx, x, ry)],
+      });
     }
     cures.push(this.alternate(x, [y]));
     return {

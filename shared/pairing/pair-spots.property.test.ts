@@ -111,11 +111,13 @@ function naive(
       own.flatMap((s) => [floorTo(s.timeMs, blockMs) - blockMs, floorTo(s.timeMs, blockMs)]),
     );
     for (const antennaA of antennas) {
-      for (const antennaB of antennas.filter((id) => id > antennaA)) {
+      for (const antennaB of antennas.filter((id) => id >= antennaA)) {
         for (const receiverA of receivers) {
           const onA = own.filter((s) => s.antenna === antennaA && s.receiver === receiverA);
           for (const receiverB of receivers) {
             const onB = own.filter((s) => s.antenna === antennaB && s.receiver === receiverB);
+            // On one antenna: each pair of receivers once, the lower id on A's side.
+            if (antennaA === antennaB && receiverA >= receiverB) continue;
             if (receiverA === receiverB) {
               for (const block of blocks.filter(inWindow)) {
                 const inBlock = (s: Tagged) => floorTo(s.timeMs, blockMs) === block;
@@ -146,7 +148,7 @@ function naive(
             }
           }
         }
-        for (const block of blocks.filter(inWindow)) {
+        for (const block of antennaA === antennaB ? [] : blocks.filter(inWindow)) {
           // Dwells start and end on whole seconds here: count the seconds one by one.
           const seconds = (antenna: number, receiver?: number) => {
             let listened = 0;

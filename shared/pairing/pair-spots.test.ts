@@ -123,8 +123,11 @@ describe('simultaneous units', () => {
     expect(pair(spots, TWO_RECEIVERS).units).toEqual([]);
   });
 
-  it('makes no unit of two receivers on one antenna', () => {
-    expect(pair([spot(1, 100, 20), spot(2, 100, 10)], [dwell(1, A), dwell(2, A)]).units).toEqual([]);
+  it('makes a unit of two receivers on one antenna, the lower id on the first side', () => {
+    const { units } = pair([spot(2, 100, 20), spot(1, 101, 10)], [dwell(1, A), dwell(2, A)]);
+    expect(units.map((u) => [u.antennaA, u.antennaB, u.receiverA, u.receiverB, u.differenceDb])).toEqual([
+      [A, A, 1, 2, -10],
+    ]);
   });
 
   it('puts a match into the block of its midpoint', () => {

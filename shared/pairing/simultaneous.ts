@@ -12,8 +12,8 @@ export interface SimultaneousMatcher {
 }
 
 /**
- * Matches the spots of two receivers on two antennas: mutually nearest in time, then within the window
- * and the frequency tolerance.
+ * Matches the spots of two receivers, on two antennas or on one: mutually nearest in time, then within the
+ * window and the frequency tolerance. On one antenna the receiver with the lower id is on A's side.
  *
  * A group is first cut into bursts wherever two neighbours in time are further apart than the window.
  * No match can span a cut, and no spot beyond a cut can be nearer than one within the window, so bursts
@@ -127,8 +127,9 @@ export function simultaneousMatcher(
         const sideQ = present[q]!;
         if (sides.receiver[sideP] === sides.receiver[sideQ]) continue;
         const order = sides.antenna[sideP]! - sides.antenna[sideQ]!;
-        if (order < 0) matches += matchSides(group, p, q);
-        else if (order > 0) matches += matchSides(group, q, p);
+        // Two receivers on one antenna: nothing about the antenna, all about the receivers.
+        const first = order !== 0 ? order < 0 : sides.receiver[sideP]! < sides.receiver[sideQ]!;
+        matches += first ? matchSides(group, p, q) : matchSides(group, q, p);
       }
     }
     return matches;

@@ -75,6 +75,7 @@ export function clusterSandwich(
     let count = 0;
     for (let at = starts[g]!; at < starts[g + 1]!; at++) {
       const c = cellsInOrder[at]!;
+      if (c === cellCount) continue;
       if (isTouched[c] === 0) {
         isTouched[c] = 1;
         touched[count++] = c;
@@ -160,6 +161,7 @@ export function support(
   for (let g = 0; cellCount > 0 && g < size; g++) {
     for (let at = starts[g]!; at < starts[g + 1]!; at++) {
       const c = cellsInOrder[at]!;
+      if (c === cellCount) continue;
       rows[c]! += 1;
       clusters[c]! += Number(last[c] !== g);
       last[c] = g;

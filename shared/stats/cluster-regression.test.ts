@@ -201,6 +201,37 @@ describe('clusterRegression', () => {
     expect(fit.confounded).toEqual([]);
   });
 
+  it('takes rows in no cell as indicators laid out would', () => {
+    fc.assert(
+      fc.property(fc.integer({ min: 1, max: 1e9 }), fc.boolean(), (seed, twoWay) => {
+        const random = createRandom(seed);
+        const n = 80;
+        const pickOf = (count: number) => Math.min(count - 1, Math.floor(random.uniform() * count));
+        const cells = Array.from({ length: n }, (_, i) => (i < 4 ? i - 1 : pickOf(4) - 1));
+        const offset = Array.from({ length: n }, () => pickOf(3) - 1);
+        const y = Array.from({ length: n }, () => random.normal());
+        const clusters = Array.from({ length: n }, (_, i) => (i < 20 ? i : pickOf(20)));
+        const options = {
+          weights: Array.from({ length: n }, () => 0.5 + random.uniform()),
+          ...(twoWay ? { secondClusters: Array.from({ length: n }, (_, i) => i % 7) } : {}),
+        };
+        const short = clusterRegression({ cells, cellCount: 3, columns: [offset] }, y, clusters, options);
+        const indicators = [0, 1, 2].map((cell) => cells.map((own) => Number(own === cell)));
+        const long = clusterRegression({ columns: [...indicators, offset] }, y, clusters, options);
+        long.coefficients.forEach((wanted, j) => {
+          const given = short.coefficients[j]!;
+          expect(given.estimate).toBeCloseTo(wanted.estimate!, 9);
+          expect(given.se).toBeCloseTo(wanted.se!, 9);
+          expect(given.rows).toBe(wanted.rows);
+          expect(given.clusters).toBe(wanted.clusters);
+        });
+        expect(short.df).toBe(long.df);
+        expect(short.rank).toBe(4);
+      }),
+      { numRuns: 100 },
+    );
+  });
+
   it('says why a standard error is missing instead of giving zero or NaN', () => {
     const reasons = (fit: ClusterRegressionResult) => fit.coefficients.map(({ reason }) => reason);
     const design = { cells: [0, 0, 1, 1, 1], cellCount: 3 };

@@ -36,7 +36,7 @@ describe('readDesign', () => {
     expect(() => readDesign({ rows: [[1]] }, 2)).toThrow(/^design must have one row per y/);
     expect(() => readDesign({ columns: [] }, 2)).toThrow('design must have at least one column');
     expect(() => readDesign({ cells: [0, 3], cellCount: 3 }, 2)).toThrow(
-      /^cells .* from 0 to 2, entry 1 is 3/,
+      /^cells .* from 0 to 2, or -1 for none; entry 1 is 3/,
     );
     expect(() => readDesign({ cells: [0], cellCount: 1 }, 2)).toThrow(/^cells must hold one index per row/);
     expect(() => readDesign({ cells: [0], cellCount: 1.5 }, 1)).toThrow(/^cellCount /);

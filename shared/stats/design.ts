@@ -6,8 +6,8 @@ import { type Numbers, requireCount, requireNumbers } from './arguments.ts';
  * - a plain array: one entry per row, each with the row's values (or, when it has not one entry per
  *   row, one entry per column);
  * - `columns` or `rows`: the same, said outright;
- * - `cells`: one indicator column per cell, given as the cell index of each row (0 ... cellCount - 1),
- *   followed by a few dense `columns` such as receiver offsets. The indicators are never laid out.
+ * - `cells`: one indicator column per cell, given as the cell index of each row (0 ... cellCount - 1, or -1:
+ *   in none), followed by a few dense `columns` such as receiver offsets. The indicators are never laid out.
  */
 export type Design =
   | readonly Numbers[]
@@ -17,7 +17,7 @@ export type Design =
 
 export interface CheckedDesign {
   n: number;
-  /** Cell of each row, null without indicator columns. */
+  /** Cell of each row, `cellCount` where it is in none; null without indicator columns. */
   cells: Int32Array | null;
   cellCount: number;
   /** Dense columns, after the cells in the order of coefficients. Not to be written to. */
@@ -51,12 +51,17 @@ function readCells(cells: Numbers, cellCount: number, n: number): Int32Array {
   requireCount('cellCount', cellCount);
   if (cells.length !== n)
     throw new RangeError(`cells must hold one index per row (${n}), got ${cells.length}`);
+  let someInNone = false;
   for (let i = 0; i < n; i++) {
     const cell = cells[i]!;
-    if (!(Number.isInteger(cell) && cell >= 0 && cell < cellCount)) {
-      throw new RangeError(`cells must hold whole numbers from 0 to ${cellCount - 1}, entry ${i} is ${cell}`);
+    if (!(Number.isInteger(cell) && cell >= -1 && cell < cellCount)) {
+      throw new RangeError(
+        `cells must hold whole numbers from 0 to ${cellCount - 1}, or -1 for none; entry ${i} is ${cell}`,
+      );
     }
+    someInNone ||= cell === -1;
   }
+  if (someInNone) return Int32Array.from(cells, (cell) => (cell === -1 ? cellCount : cell));
   return cells instanceof Int32Array ? cells : Int32Array.from(cells);
 }
 

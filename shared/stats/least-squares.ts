@@ -31,17 +31,22 @@ export interface LeastSquares {
   nullSpace: number[][];
 }
 
-/** Values less their weighted cell mean, and the means; a second pass removes their rounding error. */
+/**
+ * Values less their weighted cell mean, and the means; a second pass removes their rounding error. Rows in
+ * no cell (one past the last) stay as they are.
+ */
 function centre(
   values: Float64Array,
   cells: Int32Array,
   weights: Float64Array | null,
   totals: Float64Array,
 ): { centred: Float64Array; means: Float64Array } {
-  const means = new Float64Array(totals.length);
-  const sums = new Float64Array(totals.length);
+  const none = totals.length;
+  const means = new Float64Array(none + 1);
+  const sums = new Float64Array(none + 1);
   const takeMeans = () => {
-    for (let c = 0; c < sums.length; c++) {
+    sums[none] = 0;
+    for (let c = 0; c < none; c++) {
       if (totals[c]! > 0) sums[c]! /= totals[c]!;
       means[c]! += sums[c]!;
     }
@@ -63,7 +68,7 @@ function centre(
   if (largestSize(sums) > 2 * Number.EPSILON * largestSize(means)) {
     for (let i = 0; i < values.length; i++) centred[i]! -= sums[cells[i]!]!;
   }
-  return { centred, means };
+  return { centred, means: means.subarray(0, none) };
 }
 
 /** Sum of w a b. */
@@ -104,8 +109,10 @@ export function leastSquares(
   weights: Float64Array | null,
 ): LeastSquares {
   const { n, cells, cellCount, columns } = design;
-  const cellWeights = new Float64Array(cellCount);
-  if (cells) for (let i = 0; i < n; i++) cellWeights[cells[i]!]! += weights ? weights[i]! : 1;
+  // One more than the cells: rows in none.
+  const allWeights = new Float64Array(cellCount + 1);
+  if (cells) for (let i = 0; i < n; i++) allWeights[cells[i]!]! += weights ? weights[i]! : 1;
+  const cellWeights = allWeights.subarray(0, cellCount);
 
   const lengths = columns.map((column) => Math.sqrt(weightedDot(column, column, weights)));
   const parts = cells ? columns.map((column) => centre(column, cells, weights, cellWeights)) : null;

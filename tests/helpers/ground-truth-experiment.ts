@@ -22,7 +22,7 @@ import {
   type PairingResult,
   type UnitColumns,
 } from '../../shared/pairing/index.ts';
-import { selectHeardOnly } from '../../shared/comparison/selection.ts';
+import { selectHeardOnly } from '../../shared/comparison/heard-only-selection.ts';
 import { nightEndMs } from '../../shared/radio/night.ts';
 import { clusterIds, ladder, type LadderResult, type Random } from '../../shared/stats/index.ts';
 import { dayMs, firstNight, liveThrough, place, type Season, type World } from './ground-truth-world.ts';
@@ -85,18 +85,10 @@ export function runExperiment(
     estimate: fitted,
     naive: naiveOf(differenceDb),
     lastingOfComparedDb: lastingDb,
-    censored: once(() =>
-      censoredView(
-        input,
-        fitted.selected,
-        selectHeardOnly(input),
-        fitted.offsets,
-        fitted.estimate?.estimateDb ?? null,
-      ),
-    ),
+    censored: once(() => censoredView(input, fitted, selectHeardOnly(input))),
     sectors: once(() => {
-      const { selected, offsets, clusters } = fitted;
-      const cells = comparisonCells(selected, offsets, clusters, bySector, input.question.clustering);
+      const { selected, rows, offsets, clusters } = fitted;
+      const cells = comparisonCells(selected, rows, offsets, clusters, bySector, input.question.clustering);
       poolCells(cells, pooledPictures.sectors);
       return cells.map(({ cell }) => cell);
     }),

@@ -66,6 +66,8 @@ function askAll(study: boolean): Answer[] {
   const { units } = pairSpots(spotColumns(rows), dwellColumns(dwells), STANDING_RULES, window);
   const questions = new Map<string, UnitRow[]>();
   for (const unit of unitRowsOf(units)) {
+    // Two receivers on one antenna say nothing about antennas.
+    if (unit.antennaA === unit.antennaB) continue;
     const key = `${unit.antennaA} ${unit.antennaB} ${unit.band}`;
     const known = questions.get(key);
     if (known) known.push(unit);

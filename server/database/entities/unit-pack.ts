@@ -6,7 +6,7 @@ import { Station } from './station.ts';
  * shared/pairing/pack.ts. A cache that can always be made again from spots and dwells.
  */
 @Entity('unit_pack')
-@Check('unit_pack_check', `antenna_a < antenna_b`)
+@Check('unit_pack_check', `antenna_a <= antenna_b`)
 export class UnitPack {
   @PrimaryColumn({ name: 'station_id', type: 'integer' })
   @ForeignKey(() => Station, { name: 'unit_pack_station_id_fkey', onDelete: 'CASCADE' })

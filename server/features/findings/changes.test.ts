@@ -72,6 +72,7 @@ describe('what changed in the nights', () => {
     night: date,
     units: new Map(Object.entries(units)),
     heardOnly: new Map([['EA8QSH,160,a', 2]]),
+    common: new Map(),
     digest,
   });
 

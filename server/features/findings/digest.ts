@@ -1,5 +1,7 @@
 import { createHash } from 'node:crypto';
-import { selectHeardOnly, selectUnits } from '../../../shared/comparison/selection.ts';
+import { selectCommonAntenna } from '../../../shared/comparison/common-antenna.ts';
+import { selectHeardOnly } from '../../../shared/comparison/heard-only-selection.ts';
+import { selectUnits } from '../../../shared/comparison/selection.ts';
 import type { ComparisonInput } from '../../../shared/comparison/index.ts';
 import { nightDate } from '../../../shared/radio/night.ts';
 import { compareText } from './evidence.ts';
@@ -11,6 +13,8 @@ export interface NightLines {
   units: Map<string, string>;
   /** "EA8QSH,160,a" -> how often. */
   heardOnly: Map<string, number>;
+  /** Two receivers on one antenna: "2026-11-30T18:15:00.000Z,EA8QSH,160,EI7QSA,EI7QSC,3" -> "2,-1.5". */
+  common: Map<string, string>;
   digest: string;
 }
 
@@ -24,14 +28,15 @@ const version = 'whichwire finding 1';
 
 /**
  * SHA-256 over the units and heard-only stations that an answer uses, night by night, in a text that a
- * database's ids have no part in but those of the two antennas:
+ * database's ids have no part in but those of antennas:
  *
  *     whichwire finding 1 TAB antenna A TAB antenna B LF
  *     for each night in order:  night TAB date LF
  *       u TAB block start,call,band,kind,receiver on A,receiver on B TAB spots on A,spots on B,difference in dB LF
  *       h TAB call,band,side ("a" or "b") TAB how often LF
+ *       c TAB block start,call,band,receiver,receiver,antenna TAB matches,difference in dB LF
  *
- * Lines of a night are sorted by code unit, units first. Numbers are written as ECMAScript writes them
+ * Lines of a night are sorted by code unit, units first, then heard-only (h), then two receivers on one antenna (c). Numbers are written as ECMAScript writes them
  * (shortest text that reads back to the same number). A night's own digest is over its own lines.
  */
 export function digestOf(input: ComparisonInput): Digest {
@@ -51,7 +56,13 @@ function collect(input: ComparisonInput): NightLines[] {
   const of = (index: number) => {
     let night = nights.get(index);
     if (!night) {
-      night = { night: nightDate(index), units: new Map(), heardOnly: new Map(), digest: '' };
+      night = {
+        night: nightDate(index),
+        units: new Map(),
+        heardOnly: new Map(),
+        common: new Map(),
+        digest: '',
+      };
       nights.set(index, night);
     }
     return night;
@@ -61,6 +72,18 @@ function collect(input: ComparisonInput): NightLines[] {
   const receiver = (id: number) => receivers.get(id) ?? `receiver ${id}`;
 
   const { units } = selectUnits(input);
+  const common = selectCommonAntenna(input, units);
+  for (let i = 0; i < common.n; i++) {
+    const key = [
+      new Date(common.blockMinute[i]! * 60_000).toISOString(),
+      call(common.call[i]!),
+      common.band[i]!,
+      receiver(common.receiverA[i]!),
+      receiver(common.receiverB[i]!),
+      common.antenna[i]!,
+    ].join();
+    of(common.night[i]!).common.set(key, `${common.countA[i]},${common.differenceDb[i]}`);
+  }
   for (let i = 0; i < units.n; i++) {
     const key = [
       new Date(units.blockMinute[i]! * 60_000).toISOString(),
@@ -88,7 +111,7 @@ function textOf(night: NightLines): string {
       .sort(([a], [b]) => compareText(a, b))
       .map(([key, value]) => `${letter}\t${key}\t${value}\n`)
       .join('');
-  return `night\t${night.night}\n${lines('u', night.units)}${lines('h', night.heardOnly)}`;
+  return `night\t${night.night}\n${lines('u', night.units)}${lines('h', night.heardOnly)}${lines('c', night.common)}`;
 }
 
 export function heardOnlyCount(night: NightLines): number {

@@ -42,7 +42,7 @@ export function canonical(input: ComparisonInput): ComparisonInput {
     columns: T,
     kind: ArrayLike<number>,
   ): T {
-    const { blockMinute, call, band, receiverA, receiverB } = columns;
+    const { antennaA, antennaB, blockMinute, call, band, receiverA, receiverB } = columns;
     const number = Int32Array.from(call, (id) => numberOf.get(id)!);
     const order = Uint32Array.from(call, (_id, i) => i).sort(
       (i, j) =>
@@ -51,7 +51,9 @@ export function canonical(input: ComparisonInput): ComparisonInput {
         band[i]! - band[j]! ||
         kind[i]! - kind[j]! ||
         rank(receiverA[i]!) - rank(receiverA[j]!) ||
-        rank(receiverB[i]!) - rank(receiverB[j]!),
+        rank(receiverB[i]!) - rank(receiverB[j]!) ||
+        antennaA[i]! - antennaA[j]! ||
+        antennaB[i]! - antennaB[j]!,
     );
     const sorted = Object.entries({ ...columns, call: number } as unknown as Columns).map(
       ([name, values]) => [name, values.map((_value, i) => values[order[i]!]!)],

@@ -5,7 +5,12 @@ import { compareText } from './evidence.ts';
 
 export type NightChange = Recomputation['nights'][number];
 
-const nothing: Omit<NightLines, 'night'> = { units: new Map(), heardOnly: new Map(), digest: '' };
+const nothing: Omit<NightLines, 'night'> = {
+  units: new Map(),
+  heardOnly: new Map(),
+  common: new Map(),
+  digest: '',
+};
 
 /** Nights whose lines differ, in order, with how many units came, went and changed. */
 export function nightChanges(then: readonly NightLines[], now: readonly NightLines[]): NightChange[] {

@@ -43,10 +43,9 @@ work <- function(set) {
     d <- u$d[data_rows]; z <- if (is.null(Z)) NULL else Z[data_rows, , drop = FALSE]
     w <- if (is.null(weights)) rep(1, length(d)) else weights[data_rows]
     m <- if (is.null(z)) lm(d ~ 1, weights = w) else lm(d ~ z, weights = w)
-    id <- if (two_way) data.frame(c = u$call[data_rows], n = u$night[data_rows]) else cluster[data_rows]
-    if (two_way) id <- data.frame(cluster = paste(u$call, u$night)[data_rows], night = u$night[data_rows])
+    id <- if (two_way) data.frame(call = u$call[data_rows], night = u$night[data_rows]) else cluster[data_rows]
     v <- vcovCL(m, cluster = id, type = "HC1", cadjust = TRUE)[1, 1]
-    groups <- if (two_way) min(length(unique(id$cluster)), length(unique(id$night))) else length(unique(id))
+    groups <- if (two_way) min(length(unique(id$call)), length(unique(id$night))) else length(unique(id))
     e <- unname(coef(m)[1]); se <- sqrt(v); t <- qt(0.975, groups - 1)
     list(estimate = e, se = se, lo = e - t * se, hi = e + t * se, units = length(d))
   }

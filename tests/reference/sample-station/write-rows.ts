@@ -1,6 +1,7 @@
 import { writeFileSync } from 'node:fs';
 import { join } from 'node:path';
-import { selectHeardOnly, selectUnits } from '../../../shared/comparison/selection.ts';
+import { selectHeardOnly } from '../../../shared/comparison/heard-only-selection.ts';
+import { selectUnits } from '../../../shared/comparison/selection.ts';
 import { askSample } from './ask.ts';
 
 /**
