@@ -31,7 +31,6 @@ export const openLadder: Readonly<LadderQuestion> = Object.freeze({
 
 /** Parts that read as they do in the address of a comparison. */
 const sharedKeys = ['sectors', 'hours', 'nights', 'receivers', 'kinds', 'rules', 'margin'] as const;
-const ownKeys = ['band', 'reference', 'pair'] as const;
 /** Keys of the address, in the order in which they are written. */
 export const ladderKeys = ['band', ...sharedKeys, 'reference', 'pair'] as const;
 type LadderKey = (typeof ladderKeys)[number];
@@ -87,7 +86,7 @@ export function decodeLadder(query: AddressQuery, otherKeys: readonly string[] =
   ];
 
   function read<T>(
-    key: (typeof ownKeys)[number],
+    key: Exclude<LadderKey, (typeof sharedKeys)[number]>,
     parse: (text: string) => T | null,
     wanted: string,
   ): T | null {
