@@ -134,7 +134,9 @@ export function thinEvidence(
     );
   }
   if (clusters > 0 && clusters < 20) {
-    warnings.push(`Only ${clusters} station-nights carry this answer; twenty or more are safer.`);
+    warnings.push(
+      `Only ${clusters} ${clusters === 1 ? 'station-night carries' : 'station-nights carry'} this answer; twenty or more are safer.`,
+    );
   }
   if (stations >= 8 && halfWeight <= 3) {
     warnings.push(`${halfWeight} of ${stations} stations hold half of the units: a few strong ones decide.`);

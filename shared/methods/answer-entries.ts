@@ -134,7 +134,7 @@ export const separability: MethodEntry = {
   text: [
     'If antenna A was only ever on receiver 1 and B only on receiver 2, and nothing else links them, every unit measures antenna and receiver together. No amount of such data can tell them apart, so there is no verdict.',
     'The program finds this from the equations, not from a rule of thumb: it asks whether the difference could be changed and the offsets with it, without changing what any unit should be.',
-    'The cheapest cures: swap the two antennas between the receivers for about 40 minutes, or let one receiver alternate between both antennas, a few minutes each.',
+    'The cheapest cures: swap the two antennas between the receivers for about 40 minutes, put both receivers on one antenna for as long, or let one receiver alternate between both antennas, a few minutes each.',
   ],
   example: () => {
     const before = fitSwap(swapUnits.slice(0, 1));

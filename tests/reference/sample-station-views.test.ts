@@ -69,6 +69,15 @@ describe.each(['swap', 'alternate'] as const)('further views of %s against R', (
     });
   });
 
+  it('gives each night the interval of its own clusters', () => {
+    expect(answer.nights).toHaveLength(r.cells.estimate.length);
+    answer.nights.forEach((cell, k) => {
+      expect(cell.estimateDb).toBeCloseTo(r.cells.estimate[k], 8);
+      expect(cell.intervalDb![0]).toBeCloseTo(r.cells.lo[k], 8);
+      expect(cell.intervalDb![1]).toBeCloseTo(r.cells.hi[k], 8);
+    });
+  });
+
   it('pools the nights', () => {
     const { nights } = answer.pooling;
     expect(nights!.cells).toBe(r.pooling.cells);

@@ -91,7 +91,11 @@ work <- function(set) {
   mn <- if (is.null(Z)) lm(u$d ~ 0 + f) else lm(u$d ~ 0 + f + Z)
   keep <- seq_along(levels(f))
   y <- unname(coef(mn)[keep]); v <- unname(diag(vcovCL(mn, cluster = cluster, type = "HC1", cadjust = TRUE))[keep])
-  speaks <- tapply(cluster, f, function(id) length(unique(id))) >= 8
+  own <- tapply(cluster, f, function(id) length(unique(id))); C <- length(unique(cluster))
+  # A cell rests on its own clusters: their factor in place of the whole picture's.
+  v <- v * unname(own / (own - 1)) / (C / (C - 1))
+  cells <- list(estimate = y, lo = y - qt(0.975, unname(own) - 1) * sqrt(v), hi = y + qt(0.975, unname(own) - 1) * sqrt(v))
+  speaks <- own >= 8
   y <- y[speaks]; v <- v[speaks]
   excess <- function(tau2) { w <- 1 / (v + tau2); mu <- sum(w * y) / sum(w); sum(w * (y - mu)^2) - (length(y) - 1) }
   tau2 <- if (excess(0) <= 0) 0 else uniroot(excess, c(0, 1000), tol = 1e-14)$root
@@ -105,7 +109,7 @@ work <- function(set) {
     equalStations = fit(everything, weights = 1 / as.numeric(counts[u$call])),
     censored = list(estimate = unname(coef(cm)[1]), se = censored_se, sd = cm$scale,
       onlyA = sum(h$side > 0), onlyB = sum(h$side < 0)),
-    limits = limits, peek = unname(peek),
+    cells = cells, limits = limits, peek = unname(peek),
     pooling = list(tau2 = tau2, mean = sum(w * y) / sum(w), cells = length(y)),
     planning = list(spread = spread, power = power.t.test(delta = 1, sd = spread, power = 0.8, type = "paired")$n,
       halfWidths = sapply(c(2, 1, 0.5, 0.25), half),
