@@ -19,6 +19,8 @@ describe('what a change of role does', () => {
         'correct where calls are',
         'compare under other rules than the standing ones',
         'save, change and put away trials',
+        'freeze findings and record decisions',
+        'share findings with guests',
       ],
     });
     expect(roleChange('operator', 'contester').loses).toContain('log switching and mend the switch log');
