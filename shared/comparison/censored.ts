@@ -1,4 +1,5 @@
 import type { ComparisonAnswer } from '../contracts/comparison.ts';
+import { formatCount } from '../format.ts';
 import { censoredMean, clusterIds } from '../stats/index.ts';
 import type { CensoredReason } from '../stats/index.ts';
 import { clusterKeys } from './fairness.ts';
@@ -221,8 +222,7 @@ function censoredSentence(input: ComparisonInput, words: CensoredWords): string 
   const { estimateDb, plainDb, onlyA, onlyB, disagrees } = words;
   const { a, b } = input.antennas;
   const counts =
-    `${onlyA.toLocaleString('en-GB')} heard on ${a.name} only and ` +
-    `${onlyB.toLocaleString('en-GB')} on ${b.name} only`;
+    `${formatCount(onlyA)} heard on ${a.name} only and ` + `${formatCount(onlyB)} on ${b.name} only`;
   if (plainDb === null) return `With those ${counts}, the difference is ${decibels(estimateDb)}\u2009dB.`;
   if (decibels(plainDb) === decibels(estimateDb)) {
     return `Counting those ${counts} does not move the difference of ${decibels(plainDb)}\u2009dB.`;

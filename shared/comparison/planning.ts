@@ -1,5 +1,6 @@
 import type { ComparisonAnswer } from '../contracts/comparison.ts';
 import { sampleSize } from '../stats/index.ts';
+import { formatCount } from '../format.ts';
 import { decibels } from './wording.ts';
 
 type Planning = NonNullable<ComparisonAnswer['planning']>;
@@ -45,7 +46,7 @@ function planningSentence(plan: Planning['power'], detectableDb: number, marginD
   if (plan.moreNights === 0)
     return `${found} That is enough for the margin of ${decibels(marginDb)}\u2009dB.`;
   return (
-    `${found} For one of the margin, ${decibels(marginDb)}\u2009dB, about ${plan.moreNights.toLocaleString('en-GB')} more ` +
+    `${found} For one of the margin, ${decibels(marginDb)}\u2009dB, about ${formatCount(plan.moreNights)} more ` +
     `${plan.moreNights === 1 ? 'night' : 'nights'} like those so far are needed.`
   );
 }

@@ -1,5 +1,6 @@
 import type { ComparisonQuestion, VerdictCode } from '../contracts/comparison.ts';
 import { bandsText, enumerate, sectorsText } from '../contracts/comparison-sentence.ts';
+import { formatCount } from '../format.ts';
 import type { SelectedUnits } from './selection.ts';
 
 const minus = '\u2212';
@@ -11,8 +12,7 @@ export function decibels(value: number): string {
   return value < 0 && text !== '0.0' ? `${minus}${text}` : text;
 }
 
-const plural = (n: number, one: string, many = `${one}s`) =>
-  `${n.toLocaleString('en-GB')} ${n === 1 ? one : many}`;
+const plural = (n: number, one: string, many = `${one}s`) => `${formatCount(n)} ${n === 1 ? one : many}`;
 
 export interface VerdictWords {
   code: VerdictCode;

@@ -1,9 +1,10 @@
 import { decibels } from '../comparison/wording.ts';
 import { bandsText, enumerate, sectorsText } from '../contracts/comparison-sentence.ts';
+import { formatCount } from '../format.ts';
 import type { LadderAnswer, LadderAntenna, LadderComponent, LadderPair } from '../contracts/ladder.ts';
 
 const thin = '\u2009';
-const counted = (n: number, one: string) => `${n.toLocaleString('en-GB')} ${n === 1 ? one : `${one}s`}`;
+const counted = (n: number, one: string) => `${formatCount(n)} ${n === 1 ? one : `${one}s`}`;
 const chance = (share: number) => (share >= 0.995 ? 'above 0.99' : share.toFixed(2));
 
 /** " on 160 m toward 0-60 degrees". */

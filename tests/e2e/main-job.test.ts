@@ -11,7 +11,7 @@ import type { Site, SitePage } from '../helpers/site.ts';
  */
 const files = fileURLToPath(new URL('../reference/sample-station/', import.meta.url));
 const workedInR =
-  /BRAVO hears 0\.8\u2009dB better than ALPHA on every band, 95\u2009% interval 0\.3 to 1\.2\u2009dB, from 1,027 units of 77 stations in 4 nights\./;
+  /BRAVO hears 0\.8\u2009dB better than ALPHA on every band, 95\u2009% interval 0\.3 to 1\.2\u2009dB, from 1\u2009027 units of 77 stations in 4 nights\./;
 
 let site: Site;
 let browser: SitePage;
@@ -49,7 +49,7 @@ describe('the main job in a browser', () => {
     station = await signInAs(page, 'analyst');
     await page.goto(`${station}/compare`);
     const verdict = page.getByText(
-      /95\u2009% interval .* from [\d,]+ units of [\d,]+ stations in \d+ nights\./,
+      /95\u2009% interval .* from [\d\u2009]+ units of [\d\u2009]+ stations in \d+ nights\./,
     );
     await verdict.first().waitFor();
     await page.getByRole('heading', { name: 'When', exact: true }).waitFor();
@@ -84,7 +84,7 @@ describe('the main job in a browser', () => {
       .getByText(/from 1,02\d units of 7\d stations in 4 nights\./)
       .first()
       .waitFor();
-    await page.waitForFunction(() => !document.body.innerText.includes('from 1,027 units'));
+    await page.waitForFunction(() => !document.body.innerText.includes('from 1\u2009027 units'));
   });
 
   it('takes the correction back, and the answer with it', async () => {
