@@ -129,6 +129,8 @@ const captions = {
 const captionStyle = { size: 8.5, colour: ink.muted };
 const titleHeight = 20;
 const wideGap = 14;
+/** Numbers in the pictures must stay readable on paper. */
+const smallestScale = 0.8;
 
 function drawPair(sheet: Sheet, pictures: FrozenPictures): void {
   const gap = 14;
@@ -137,18 +139,25 @@ function drawPair(sheet: Sheet, pictures: FrozenPictures): void {
     { title: 'The differences', name: 'histogram', x: sheet.left },
     { title: 'Where', name: 'rose', x: sheet.left + half + gap },
   ] as const;
-  const heights = pair.map(({ name }) => sheet.pictureHeight(pictures[name].whole, half));
-  const captionHeights = pair.map(({ name }) => sheet.heightOf(captions[name], half, captionStyle));
-  const whole = titleHeight + Math.max(...heights) + 4 + Math.max(...captionHeights);
+  const captionHeight = Math.max(
+    ...pair.map(({ name }) => sheet.heightOf(captions[name], half, captionStyle)),
+  );
+  const fullHeight = Math.max(...pair.map(({ name }) => sheet.pictureHeight(pictures[name].whole, half)));
   sheet.space(10);
+  // A little smaller on this page rather than on the next one, with half of this one empty.
+  const shrunk = (sheet.room - titleHeight - 4 - captionHeight) / fullHeight;
+  const scale = shrunk < 1 && shrunk >= smallestScale ? shrunk : 1;
+  const height = fullHeight * scale;
+  const whole = titleHeight + height + 4 + captionHeight;
   sheet.keep(whole);
   sheet.doc.outline.addItem('The pictures');
   const top = sheet.y;
   for (const { title, name, x } of pair) {
     sheet.write(title, { x, y: top, width: half, size: 12, weight: 600 });
     sheet.y = top + titleHeight;
-    sheet.picture(pictures[name].whole, { x, width: half });
-    const below = top + titleHeight + Math.max(...heights) + 4;
+    const width = half * scale;
+    sheet.picture(pictures[name].whole, { x: x + (half - width) / 2, width });
+    const below = top + titleHeight + height + 4;
     sheet.write(captions[name], { x, y: below, width: half, ...captionStyle });
   }
   sheet.y = top + whole;
