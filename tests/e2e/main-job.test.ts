@@ -81,7 +81,7 @@ describe('the main job in a browser', () => {
     await preview.waitFor({ state: 'hidden' });
     await page.goto(question);
     await page
-      .getByText(/from 1,02\d units of 7\d stations in 4 nights\./)
+      .getByText(/from 1\u200902\d units of 7\d stations in 4 nights\./)
       .first()
       .waitFor();
     await page.waitForFunction(() => !document.body.innerText.includes('from 1\u2009027 units'));
