@@ -26,7 +26,7 @@ export function answerLadder(input: LadderInput): LadderResult {
   const { question, rules, marginDb, sectorCount } = input;
   const { bandMetres, bands, units, leftOut } = selectLadderUnits(input);
   const breadth = measureBreadth(units);
-  const fit = units.n === 0 ? null : fitUnits(units, breadth.clusters, question.referenceAntennaId);
+  const fit = breadth.units === 0 ? null : fitUnits(units, breadth.clusters, question.referenceAntennaId);
   const components = fit ? fit.groups.map((ids, group) => componentOf(input, fit, breadth, ids, group)) : [];
   const counts = countsOf(units, fit, breadth);
   const where = whereText(bandMetres, question.sectors, sectorCount);
@@ -130,13 +130,13 @@ function receiverGroups({ receivers }: LadderInput, fit: Fit): LadderResult['rec
   }));
 }
 
-function countsOf(units: LadderUnits, fit: Fit | null, { all }: MeasuredBreadth): LadderResult['counts'] {
+function countsOf(units: LadderUnits, fit: Fit | null, breadth: MeasuredBreadth): LadderResult['counts'] {
   const alternating = units.alternating.reduce((sum, flag) => sum + flag, 0);
   return {
-    units: units.n,
-    clusters: fit?.clusters ?? 0,
-    ...all,
-    simultaneous: units.n - alternating,
+    units: breadth.units,
+    clusters: breadth.clusterCount,
+    ...breadth.all,
+    simultaneous: breadth.units - alternating,
     alternating,
     df: fit?.df ?? 0,
     draws: fit?.draws ?? 0,

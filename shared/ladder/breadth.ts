@@ -1,3 +1,4 @@
+import { comparesAntennas } from './selection.ts';
 import type { LadderUnits } from './selection.ts';
 
 /** In how many nights, and of how many stations, units were made. */
@@ -7,6 +8,9 @@ export interface Breadth {
 }
 
 export interface MeasuredBreadth {
+  /** Units that compare antennas, and their (call sign, night)s. */
+  units: number;
+  clusterCount: number;
   all: Breadth;
   ofAntenna: (id: number) => Breadth;
   /** The antennas in either order. */
@@ -44,6 +48,7 @@ export function measureBreadth(units: LadderUnits): MeasuredBreadth {
   const nameOf = (a: number, b: number) => `${Math.min(a, b)} ${Math.max(a, b)}`;
   let pair: Seen | undefined;
   for (let i = 0; i < n; i++) {
+    if (!comparesAntennas(units, i)) continue;
     const a = antennaA[i]!;
     const b = antennaB[i]!;
     // Units of one pair stand together: look it up where the pair changes only.
@@ -59,13 +64,17 @@ export function measureBreadth(units: LadderUnits): MeasuredBreadth {
     unitsOfStation[stations.numbers[i]!]!++;
   }
   const every = [...pairs.values()];
+  // Millions of calls over a year fit; a map of texts would take longer than the fit itself.
+  const clusters = stations.numbers.map((station, i) => station * nights.count + nights.numbers[i]!);
+  const compared = clusters.filter((_, i) => comparesAntennas(units, i));
   return {
-    all: { nights: nights.count, stations: stations.count },
+    units: compared.length,
+    clusterCount: new Set(compared).size,
+    all: breadthOf(every),
     ofAntenna: (id) => breadthOf(every.filter(({ a, b }) => a === id || b === id)),
     ofPair: (a, b) => breadthOf([pairs.get(nameOf(a, b))].filter((own) => own !== undefined)),
-    unitsOfStation,
-    // Millions of calls over a year fit; a map of texts would take longer than the fit itself.
-    clusters: stations.numbers.map((station, i) => station * nights.count + nights.numbers[i]!),
+    unitsOfStation: unitsOfStation.filter((count) => count > 0),
+    clusters,
   };
 }
 

@@ -121,6 +121,16 @@ describe('obstacles of a ladder', () => {
       input([...tangled, ...heard(1, 1, 0.5, [1, 2])], { antennas: 2, receivers: 2 }),
     );
     expect(cured.obstacles).toEqual([]);
+    // They compare no antennas, and count as no units of the ladder.
+    expect(cured.counts).toMatchObject({
+      units: 120,
+      simultaneous: 120,
+      clusters: 120,
+      stations: 10,
+      nights: 12,
+    });
+    expect(cured.bands).toEqual([{ bandMetres: 160, units: 120 }]);
+    expect(cured.components[0]!.antennas.map(({ units }) => units)).toEqual([120, 120]);
     // On one antenna EI7QSA reports 0.5 dB more: of the 2 dB, so much was the receiver.
     expect(cured.components[0]!.pairs[0]!.differenceDb).toBeCloseTo(1.5, 9);
     expect(cured.components[0]!.antennas.map(({ name }) => name)).toEqual(['Wire 1', 'Wire 2']);

@@ -24,14 +24,25 @@ export interface LadderSelection {
   leftOut: LadderAnswer['leftOut'];
 }
 
+/** Two receivers on one antenna tell the receivers apart and compare no antennas: they count as no unit of a ladder. */
+export function comparesAntennas(
+  { antennaA, antennaB }: { antennaA: Int32Array; antennaB: Int32Array },
+  i: number,
+): boolean {
+  return antennaA[i] !== antennaB[i];
+}
+
 /** Bands with units, longest wave first. */
-function bandsOf(band: Int16Array): LadderAnswer['bands'] {
+function bandsOf(units: LadderInput['units']): LadderAnswer['bands'] {
+  const { band } = units;
   const counts = new Map<number, number>();
   // Units of one band stand together for long: count runs, not rows.
   for (let from = 0; from < band.length;) {
     let to = from + 1;
     while (to < band.length && band[to] === band[from]) to++;
-    counts.set(band[from]!, (counts.get(band[from]!) ?? 0) + to - from);
+    let compared = 0;
+    for (let i = from; i < to; i++) compared += Number(comparesAntennas(units, i));
+    if (compared > 0) counts.set(band[from]!, (counts.get(band[from]!) ?? 0) + compared);
     from = to;
   }
   return [...counts]
@@ -45,7 +56,7 @@ function bandsOf(band: Int16Array): LadderAnswer['bands'] {
  */
 export function selectLadderUnits(input: LadderInput): LadderSelection {
   const { question, units } = input;
-  const bands = bandsOf(units.band);
+  const bands = bandsOf(units);
   const busiest = bands.reduce<(typeof bands)[number] | null>(
     (most, band) => (most && most.units >= band.units ? most : band),
     null,
@@ -73,23 +84,24 @@ export function selectLadderUnits(input: LadderInput): LadderSelection {
   let n = 0;
   for (let i = 0; i < units.call.length; i++) {
     if (units.band[i] !== bandMetres) continue;
+    const counted = Number(comparesAntennas(units, i));
     const block = calendar.at(units.blockMinute[i]!);
     if (!block.inHours) {
-      leftOut.outsideHoursUnits++;
+      leftOut.outsideHoursUnits += counted;
       continue;
     }
     if (receivers.size > 0 && !(receivers.has(units.receiverA[i]!) && receivers.has(units.receiverB[i]!))) {
-      leftOut.otherReceiverUnits++;
+      leftOut.otherReceiverUnits += counted;
       continue;
     }
     if (units.kind[i] === ALTERNATING ? !wantAlternating : !wantSimultaneous) {
-      leftOut.otherKindUnits++;
+      leftOut.otherKindUnits += counted;
       continue;
     }
     const sector = sectorOfCall(units.call[i]!);
-    if (sector === NO_SECTOR) leftOut.bearingUnsureUnits++;
+    if (sector === NO_SECTOR) leftOut.bearingUnsureUnits += counted;
     if (sectors.size > 0 && !sectors.has(sector)) {
-      if (sector !== NO_SECTOR) leftOut.otherSectorUnits++;
+      if (sector !== NO_SECTOR) leftOut.otherSectorUnits += counted;
       continue;
     }
     rows[n] = i;
